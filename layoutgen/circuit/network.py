@@ -1,0 +1,264 @@
+"""Nodal admittance matrix of a comb over frequency, and what is read from it.
+
+Every element is passive and reciprocal at every frequency, so the network is. The losses of coupled lines enter
+mode by mode: the modes are those of the lossless section, the resistance and conductance of each the diagonal terms
+of the loss matrices in that basis (first-order perturbation, good while the loss per radian is small).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import Literal
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+from scipy.interpolate import PchipInterpolator
+
+from layoutgen.circuit.ends import (
+    chip_row,
+    grounded_row,
+    open_end,
+    overhang_capacitance,
+    step_capacitances,
+)
+from layoutgen.circuit.sections import Section, SectionSolver, cut_into_sections, segment_at
+from layoutgen.comb import Comb, Feed
+from layoutgen.errors import InputError
+from layoutgen.lines import LossMatrices, Modes, surface_resistance, tap_capacitance
+
+__all__ = ["ALL_LOSSES", "Circuit", "Mechanism"]
+
+Floats = NDArray[np.float64]
+Complexes = NDArray[np.complex128]
+Mechanism = Literal["conductor", "dielectric", "capacitor", "via"]
+
+ALL_LOSSES: frozenset[Mechanism] = frozenset({"conductor", "dielectric", "capacitor", "via"})
+NO_LOSSES: frozenset[Mechanism] = frozenset()
+
+
+class Circuit:
+    """The circuit of a comb as it is drawn, or of some of its resonators alone.
+
+    Parameters
+    ----------
+    comb : Comb
+    solver : SectionSolver, optional
+        Keeps what it has solved; give the same one for combs on one stack-up.
+    strips : sequence of int, optional
+        Resonators that are present; all of them by default.
+    """
+
+    def __init__(
+        self, comb: Comb, solver: SectionSolver | None = None, strips: Sequence[int] | None = None
+    ) -> None:
+        self.comb = comb
+        self.strips = tuple(range(comb.order) if strips is None else strips)
+        self._solver = solver or SectionSolver(comb.stack, comb.width)
+        self._sections = cut_into_sections(comb, self.strips)
+        self._modes = [modes for _, modes in self._solver.modes(comb, self._sections)]
+        self._loss_matrices: list[LossMatrices] | None = None
+        self._place_nodes()
+        stack = comb.stack
+        resonators = [comb.resonators[i] for i in self.strips]
+        self._ground = grounded_row(stack, [r.short for r in resonators], [r.x for r in resonators],
+                                    [r.segments[0].width for r in resonators])
+        self._chips = chip_row(comb, self.strips) if resonators[0].load is not None else None
+
+    # -- what is asked of it
+
+    def scattering(self, frequency: ArrayLike, losses: frozenset[Mechanism] = ALL_LOSSES) -> Complexes:
+        """S-parameters between the two ports at the board edges.
+
+        Parameters
+        ----------
+        frequency : array_like, shape (n_freq,)
+            Greater than 0. [Hz]
+        losses : frozenset
+            Mechanisms that are counted.
+
+        Returns
+        -------
+        ndarray, shape (n_freq, 2, 2)
+            Each port referred to its own impedance.
+        """
+        f = _frequencies(frequency)
+        matrix = self._matrix(f, losses, feeds=True)
+        root = np.array([1 / np.sqrt(feed.impedance) for feed in self.comb.feeds])
+        for port in (0, 1):
+            matrix[:, port, port] += root[port] ** 2
+        excitation = np.zeros((matrix.shape[1], 2))
+        excitation[0, 0], excitation[1, 1] = root
+        waves = np.linalg.solve(matrix, excitation)[:, :2, :]
+        result: Complexes = 2 * root[None, :, None] * waves - np.eye(2)
+        return result
+
+    def input_admittance(
+        self, frequency: ArrayLike, strip: int, losses: frozenset[Mechanism] = NO_LOSSES
+    ) -> Complexes:
+        """Admittance at the loaded end of a resonator, the feeds being taken away. [S]"""
+        f = _frequencies(frequency)
+        matrix = self._matrix(f, losses, feeds=False)
+        node = self._node(strip, self.comb.resonators[strip].load_position)
+        excitation = np.zeros((matrix.shape[1], 1))
+        excitation[node] = 1
+        result: Complexes = 1 / np.linalg.solve(matrix, excitation)[:, node, 0]
+        return result
+
+    def capacitor_resonance(self) -> float | None:
+        """Lowest series resonance of the mounted chips; None without chips. [Hz]"""
+        return None if self._chips is None else float(np.min(self._chips.self_resonance()))
+
+    def pair_resonances(self, near: float) -> tuple[float, float]:
+        """Even and odd resonance of two equal resonators, the feeds being taken away. [Hz]
+
+        Parameters
+        ----------
+        near : float
+            Frequency around which they are looked for, from half to twice it. [Hz]
+
+        Raises
+        ------
+        InputError
+            If there are not two strips or a resonance lies outside.
+        """
+        if len(self.strips) != 2:
+            raise InputError("Circuit", "strips", self.strips, "must be a pair")
+        f = near * np.linspace(0.5, 2.0, 121)
+        matrix = self._matrix(f, NO_LOSSES, feeds=False)
+        nodes = [self._node(i, self.comb.resonators[i].load_position) for i in self.strips]
+        excitation = np.zeros((matrix.shape[1], 1))
+        excitation[nodes[0]] = 1
+        voltage = np.linalg.solve(matrix, excitation)[:, nodes, 0]
+        even = _first_zero(f, (1 / (voltage[:, 0] + voltage[:, 1])).imag)
+        odd = _first_zero(f, (1 / (voltage[:, 0] - voltage[:, 1])).imag)
+        return even, odd
+
+    def line_at_ground(self) -> tuple[Modes, float]:
+        """Modes of the lowest section, and the length of its first line as inductive as the grounded end. [m]"""
+        modes = self._modes[0]
+        stiffness = modes.current @ modes.current.T
+        per_metre = np.linalg.inv(stiffness)[0, 0]
+        return modes, float(self._ground.inductance[0, 0] / per_metre)
+
+    # -- nodes: the two ports first, then each resonator at each plane from the shorts upward
+
+    def _place_nodes(self) -> None:
+        self._planes = [self._sections[0].bottom, *(section.top for section in self._sections)]
+        self._index: dict[tuple[int, int], int] = {}
+        for plane in range(len(self._planes)):
+            present = set(self._sections[plane].strips if plane < len(self._sections) else ())
+            if plane:
+                present |= set(self._sections[plane - 1].strips)
+            for strip in sorted(present):
+                self._index[strip, plane] = 2 + len(self._index)
+
+    def _node(self, strip: int, height: float) -> int:
+        plane = int(np.argmin([abs(p - height) for p in self._planes]))
+        return self._index[strip, plane]
+
+    # -- assembly
+
+    def _matrix(self, f: Floats, losses: frozenset[Mechanism], *, feeds: bool) -> Complexes:
+        size = 2 + len(self._index)
+        matrix = np.zeros((len(f), size, size), dtype=complex)
+        for number, section in enumerate(self._sections):
+            self._add_section(matrix, f, number, section, losses)
+        self._add_ends(matrix, f, losses)
+        for port, feed in enumerate(self.comb.feeds):
+            if feeds:
+                self._add_feed(matrix, f, port, feed, losses)
+            else:
+                matrix[:, port, port] += 1.0
+        return matrix
+
+    def _add_section(
+        self, matrix: Complexes, f: Floats, number: int, section: Section, losses: frozenset[Mechanism]
+    ) -> None:
+        loss = self._losses()[number] if losses & {"conductor", "dielectric"} else None
+        near, far = self._line(f, self._modes[number], loss, section.length, losses)
+        bottom = np.array([self._index[i, number] for i in section.strips])
+        top = np.array([self._index[i, number + 1] for i in section.strips])
+        for a, b, block in ((bottom, bottom, near), (top, top, near), (bottom, top, far), (top, bottom, far)):
+            matrix[:, a[:, None], b[None, :]] += block
+
+    def _losses(self) -> list[LossMatrices]:
+        if self._loss_matrices is None:
+            self._loss_matrices = self._solver.losses(self.comb, self._sections)
+        return self._loss_matrices
+
+    def _line(
+        self, f: Floats, modes: Modes, loss: LossMatrices | None, length: float, losses: frozenset[Mechanism]
+    ) -> tuple[Complexes, Complexes]:
+        """Admittance of a piece of coupled line: at one end, and between the ends."""
+        omega = 2 * np.pi * f[:, None]
+        series = 1j * omega * np.ones_like(modes.slowness)
+        shunt = 1j * omega * modes.slowness**2
+        stack = self.comb.stack
+        if loss is not None and "conductor" in losses:
+            surface = surface_resistance(f, conductivity=stack.conductivity, roughness=stack.roughness)
+            series = series + surface[:, None] * _diagonal(modes.current, loss.resistance)
+        if loss is not None and "dielectric" in losses:
+            shunt = shunt + omega * stack.tan_delta * _diagonal(modes.voltage, loss.capacitance_slope)
+        exponent = np.sqrt(series * shunt) * length
+        admittance = np.sqrt(shunt / series)
+        current = modes.current
+        near = (current * (admittance / np.tanh(exponent))[:, None, :]) @ current.T
+        far = (current * (-admittance / np.sinh(exponent))[:, None, :]) @ current.T
+        return near, far
+
+    def _add_ends(self, matrix: Complexes, f: Floats, losses: frozenset[Mechanism]) -> None:
+        omega, stack = 2 * np.pi * f, self.comb.stack
+        shorts = np.array([self._index[i, 0] for i in self.strips])
+        matrix[:, shorts[:, None], shorts[None, :]] += np.linalg.inv(
+            self._ground.impedance(f, lossy="via" in losses)
+        )
+        if self._chips is not None:
+            loads = np.array([self._node(i, self.comb.resonators[i].load_position) for i in self.strips])
+            matrix[:, loads[:, None], loads[None, :]] += self._chips.admittance(
+                f, lossy_part="capacitor" in losses, lossy_vias="via" in losses
+            )
+        for i in self.strips:
+            resonator = self.comb.resonators[i]
+            shunts = [(0.0, overhang_capacitance(resonator, stack)), (resonator.length, open_end(resonator, stack)),
+                      *step_capacitances(resonator, stack)]
+            for height, capacitance in shunts:
+                node = self._node(i, height)
+                matrix[:, node, node] += 1j * omega * capacitance
+
+    def _add_feed(
+        self, matrix: Complexes, f: Floats, port: int, feed: Feed, losses: frozenset[Mechanism]
+    ) -> None:
+        comb, stack = self.comb, self.comb.stack
+        modes, loss = self._solver.single(feed.width)
+        near, far = self._line(f, modes, loss, comb.feed_length(feed), losses)
+        node = self._node(feed.resonator, feed.tap)
+        matrix[:, port, port] += near[:, 0, 0]
+        matrix[:, node, node] += near[:, 0, 0]
+        matrix[:, port, node] += far[:, 0, 0]
+        matrix[:, node, port] += far[:, 0, 0]
+        line_width = segment_at(comb.resonators[feed.resonator], feed.tap).width
+        fringe = tap_capacitance(line_width=line_width, feed_width=feed.width, height=stack.height,
+                                 eps_r=stack.eps_r, thickness=stack.conductor)
+        matrix[:, node, node] += 2j * np.pi * f * fringe
+
+
+def _diagonal(basis: Floats, matrix: Floats) -> Floats:
+    result: Floats = np.einsum("im,ij,jm->m", basis, matrix, basis)
+    return result
+
+
+def _frequencies(frequency: ArrayLike) -> Floats:
+    f = np.atleast_1d(np.asarray(frequency, dtype=float))
+    if not bool(np.all((f > 0) & np.isfinite(f))):
+        raise InputError("Circuit", "frequency", frequency, "every value must be finite and greater than 0 Hz")
+    return f
+
+
+def _first_zero(f: Floats, susceptance: Floats) -> float:
+    """First upward zero of a susceptance over frequency, by inverse interpolation."""
+    rising = np.flatnonzero((susceptance[:-1] < 0) & (susceptance[1:] >= 0))
+    if not len(rising):
+        raise InputError("Circuit", "near", f"{f[0]:.4g} to {f[-1]:.4g} Hz", "no resonance lies in this range")
+    at = int(rising[0])
+    around = slice(max(at - 1, 0), at + 3)
+    return float(PchipInterpolator(susceptance[around], f[around])(0.0))

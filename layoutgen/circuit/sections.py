@@ -1,0 +1,165 @@
+"""The comb cut into uniform sections of coupled line, and their modes."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from layoutgen.comb import Comb, Resonator, Segment, Stack
+from layoutgen.lines import LineSolver, LossMatrices, Modes, StripMatrices
+
+__all__ = ["Section", "SectionSolver", "cut_into_sections"]
+
+Floats = NDArray[np.float64]
+
+_SAME = 1e-10
+"""Dimensions closer than this are one. [m]"""
+
+
+@dataclass(frozen=True, kw_only=True)
+class Section:
+    """A uniform piece of the comb between two planes.
+
+    Attributes
+    ----------
+    bottom, top : float
+        Heights of the planes above the axis of the shorting vias. [m]
+    strips : tuple of int
+        Resonators present.
+    widths : tuple of float
+        Of these. [m]
+    """
+
+    bottom: float
+    top: float
+    strips: tuple[int, ...]
+    widths: tuple[float, ...]
+
+    @property
+    def length(self) -> float:
+        """Along the resonators. [m]"""
+        return self.top - self.bottom
+
+
+def cut_into_sections(comb: Comb, strips: Sequence[int]) -> list[Section]:
+    """Sections from the shorts upward, cut wherever a width changes, a line ends, a tap or a chip attaches.
+
+    Parameters
+    ----------
+    comb : Comb
+    strips : sequence of int
+        Resonators that are present; the others are left out.
+    """
+    planes = {0.0}
+    for i in strips:
+        resonator = comb.resonators[i]
+        height = 0.0
+        for segment in resonator.segments:
+            height += segment.length
+            planes.add(height)
+        planes.add(resonator.load_position)
+    planes |= {feed.tap for feed in comb.feeds if feed.resonator in strips}
+    heights = _merged(sorted(planes))
+    sections = []
+    for bottom, top in zip(heights[:-1], heights[1:], strict=True):
+        middle = (bottom + top) / 2
+        present = [i for i in strips if comb.resonators[i].length > middle]
+        widths = tuple(segment_at(comb.resonators[i], middle).width for i in present)
+        sections.append(Section(bottom=bottom, top=top, strips=tuple(present), widths=widths))
+    return sections
+
+
+def segment_at(resonator: Resonator, height: float) -> Segment:
+    """Segment of a resonator at a height above the axis of its vias."""
+    top = 0.0
+    for segment in resonator.segments:
+        top += segment.length
+        if height <= top:
+            return segment
+    return resonator.segments[-1]
+
+
+def _merged(heights: list[float]) -> list[float]:
+    merged = heights[:1]
+    for height in heights[1:]:
+        if height - merged[-1] > _SAME:
+            merged.append(height)
+    return merged
+
+
+class SectionSolver:
+    """Matrices of sections on one stack-up; what has been solved is kept for the next comb that shares it.
+
+    Parameters
+    ----------
+    stack : Stack
+    reach : float
+        Greatest width of a comb that will be asked for. [m]
+    """
+
+    def __init__(self, stack: Stack, reach: float) -> None:
+        self.stack, self._reach = stack, reach
+        self._solvers: dict[tuple[float, float] | None, LineSolver] = {}
+        self._matrices: dict[object, tuple[StripMatrices, Modes]] = {}
+        self._losses: dict[object, LossMatrices] = {}
+        self._single: dict[float, tuple[Modes, LossMatrices]] = {}
+
+    def modes(
+        self, comb: Comb, sections: Sequence[Section]
+    ) -> list[tuple[StripMatrices, Modes]]:
+        """Matrices and modes of each section."""
+        return [self._matrices[key] for key in self._solve(comb, sections, with_losses=False)]
+
+    def losses(self, comb: Comb, sections: Sequence[Section]) -> list[LossMatrices]:
+        """Loss matrices of each section."""
+        return [self._losses[key] for key in self._solve(comb, sections, with_losses=True)]
+
+    def single(self, width: float) -> tuple[Modes, LossMatrices]:
+        """An isolated strip without side walls."""
+        if width not in self._single:
+            solver = self._solver(None)
+            centre, widths = np.zeros(1), np.array([width])
+            matrices = solver.matrices(centre, widths, [[0]])[0]
+            self._single[width] = matrices.modes(), solver.losses(centre, widths, [[0]])[0]
+        return self._single[width]
+
+    def _solver(self, walls: tuple[float, float] | None) -> LineSolver:
+        if walls not in self._solvers:
+            stack = self.stack
+            self._solvers[walls] = LineSolver(height=stack.height, eps_r=stack.eps_r, thickness=stack.conductor,
+                                              cover=stack.cover, walls=walls, reach=self._reach)
+        return self._solvers[walls]
+
+    def _solve(self, comb: Comb, sections: Sequence[Section], *, with_losses: bool) -> list[object]:
+        """Keys of the sections' results, solving those that are new, sets of strips that share panels at once."""
+        x = np.array([resonator.x for resonator in comb.resonators])
+        keys = [_key(comb, section, x) for section in sections]
+        known: dict[object, object] = dict(self._losses if with_losses else self._matrices)
+        new: dict[object, Section] = {k: s for k, s in zip(keys, sections, strict=True) if k not in known}
+        while new:
+            widest = max(new.values(), key=lambda section: len(section.strips))
+            width_of = dict(zip(widest.strips, widest.widths, strict=True))
+            shared = {k: s for k, s in new.items()
+                      if all(width_of.get(i) == w for i, w in zip(s.strips, s.widths, strict=True))}
+            subsets = [[widest.strips.index(i) for i in s.strips] for s in shared.values()]
+            centres, widths = x[list(widest.strips)], np.array(widest.widths)
+            solver = self._solver(comb.side_walls)
+            if with_losses:
+                self._losses.update(zip(shared, solver.losses(centres, widths, subsets), strict=True))
+            else:
+                solved = solver.matrices(centres, widths, subsets)
+                self._matrices.update({k: (m, m.modes()) for k, m in zip(shared, solved, strict=True)})
+            new = {k: s for k, s in new.items() if k not in shared}
+        return list(keys)
+
+
+def _key(comb: Comb, section: Section, x: Floats) -> object:
+    """Sections with equal keys have equal matrices: positions are relative unless walls fix them."""
+    chosen = x[list(section.strips)]
+    origin = chosen[0] if comb.side_walls is None else 0.0
+    positions = tuple(np.round((chosen - origin) / _SAME).astype(np.int64).tolist())
+    widths = tuple(round(w / _SAME) for w in section.widths)
+    return positions, widths, comb.side_walls

@@ -1,0 +1,292 @@
+"""Refinement of a comb on its own lossless response.
+
+What is fitted is the characteristic function S11/S21: imaginary in a lossless symmetric network, independent of the
+feed lines, and ideally the ripple factor times a Chebyshev polynomial of the mapped frequency (a power of it for the
+maximally flat case). A least-squares fit over the band takes a rough start to a filter of the right shape; what
+the comb's own departure from the mapping leaves is then taken off by making all ripples, band edges included, equal.
+
+Reference for the characteristic function: H. J. Orchard, G. C. Temes, "Filter design using transformed variables",
+IEEE Trans. Circuit Theory CT-15, 1968.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.polynomial import chebyshev
+from numpy.typing import NDArray
+
+from layoutgen.circuit import NO_LOSSES, Circuit, SectionSolver
+from layoutgen.errors import InputError, LayoutError
+from layoutgen.sizing.template import Dimensions, Template
+from layoutgen.synthesis import normalised_frequency, ripple_factor
+
+__all__ = ["Goal", "RefineError", "place_on_grid", "refine"]
+
+Floats = NDArray[np.float64]
+Residual = Callable[[Floats], Floats]
+
+
+class RefineError(LayoutError):
+    """The fit did not reach the wanted response."""
+
+
+@dataclass(frozen=True, kw_only=True)
+class Goal:
+    """The response a comb is refined towards.
+
+    Attributes
+    ----------
+    lower, upper : float
+        Band edges: ripple level, or 3.01 dB when maximally flat. [Hz]
+    return_loss : float or None
+        Equal-ripple level; None for maximally flat. [dB]
+    """
+
+    lower: float
+    upper: float
+    return_loss: float | None
+
+    @property
+    def level(self) -> float:
+        """Characteristic function at the band edges. [1]"""
+        return 1.0 if self.return_loss is None else ripple_factor(self.return_loss)
+
+    def target(self, frequency: Floats, order: int, warp: Floats) -> Floats:
+        """Characteristic function over a frequency axis that is warped inside the band.
+
+        The band edges stay where they are. The warp is what distant couplings and the lines' own dispersion make
+        of the band-pass mapping; every warped polynomial is equally rippled, or equally flat.
+        """
+        x = normalised_frequency(frequency, lower=self.lower, upper=self.upper)
+        x = x + (1 - x * x) * np.polynomial.polynomial.polyval(x, warp)
+        if self.return_loss is None:
+            return np.asarray(x**order, dtype=float)
+        return self.level * chebyshev.chebval(x, [0] * order + [1])
+
+    def inside(self, count: int) -> Floats:
+        """Frequencies over the band, edges included, crowding at the edges. [Hz]"""
+        x = np.cos(np.pi * np.arange(count) / (count - 1))[::-1]
+        centre, half = (self.lower + self.upper) / 2, (self.upper - self.lower) / 2
+        return np.asarray(centre + half * x)
+
+
+def characteristic(circuit: Circuit, frequency: Floats) -> Floats:
+    """Imaginary part of S11/S21 without loss. [1]"""
+    s = circuit.scattering(frequency, NO_LOSSES)
+    result: Floats = (s[:, 0, 0] / s[:, 1, 0]).imag
+    return result
+
+
+def refine(template: Template, solver: SectionSolver, start: Dimensions, goal: Goal) -> Dimensions:
+    """Dimensions whose lossless response meets the goal.
+
+    Parameters
+    ----------
+    template : Template
+    solver : SectionSolver
+    start : Dimensions
+        A first guess.
+    goal : Goal
+
+    Returns
+    -------
+    Dimensions
+        Not yet on the grid.
+
+    Raises
+    ------
+    RefineError
+        If the fit stays away from the goal, with the figure it reached.
+    """
+    order = template.choices.order
+    scale = _scales(start, order, goal)
+
+    def evaluate(vector: Floats, frequency: Floats) -> Floats:
+        comb = template.comb(Dimensions.of(vector * scale, order))
+        return characteristic(Circuit(comb, solver), frequency)
+
+    enough = 0.05 if goal.return_loss is not None else 0.003
+    fitted = _least_squares(_Shape(evaluate, goal, order),
+                            np.concatenate([start.vector() / scale, np.zeros(_WARP)]), enough)
+    vector = fitted[:-_WARP]
+    if goal.return_loss is not None:
+        vector = _equalise(evaluate, vector, goal, order)
+    worst = _worst(evaluate(vector, goal.inside(16 * order + 1)), goal)
+    if not worst <= (1.02 if goal.return_loss is not None else 1.05):
+        raise RefineError(f"the fit stays {20 * np.log10(worst):.1f} dB above the wanted in-band reflection")
+    return Dimensions.of(vector * scale, order)
+
+
+def place_on_grid(
+    template: Template, solver: SectionSolver, dimensions: Dimensions, goal: Goal
+) -> Dimensions:
+    """The grid point near given dimensions whose in-band response is best.
+
+    Rounding each dimension by itself can cost a decibel of return loss in a narrow band; errors of one dimension can
+    be made up by another. The response of the neighbouring grid points is judged on its derivatives.
+
+    Parameters are those of `refine`.
+    """
+    grid, order = template.choices.grid, template.choices.order
+    exact = dimensions.vector()
+    sample = goal.inside(12 * order + 1)
+
+    def evaluate(vector: Floats) -> Floats:
+        return characteristic(Circuit(template.comb(Dimensions.of(vector, order)), solver), sample)
+
+    value = evaluate(exact)
+    slopes = np.stack([(evaluate(exact + grid * row) - value) / grid for row in np.eye(len(exact))], axis=1)
+    nearest = np.floor(exact / grid + 0.5)
+    best, worst = nearest, np.inf
+    # moves of one grid step in up to two dimensions, repeated until nothing gets better
+    single = np.vstack([np.eye(len(exact)), -np.eye(len(exact))])
+    moves = np.unique((single[:, None, :] + single[None, :, :]).reshape(-1, len(exact)), axis=0)
+    moves = np.vstack([single, moves])
+    for _ in range(40):
+        candidates = best + moves
+        heights = np.max(np.abs(value[None, :] + (candidates * grid - exact) @ slopes.T), axis=1)
+        near = np.max(np.abs(candidates - nearest), axis=1) <= _ROOM
+        heights[~near] = np.inf
+        at = int(np.argmin(heights))
+        if not heights[at] < worst - 1e-9:
+            break
+        best, worst = candidates[at], float(heights[at])
+    return Dimensions.of(best * grid, order)
+
+
+_ROOM = 6
+"""Grid steps that a dimension may move for the sake of the others."""
+
+_WARP = 3
+"""Terms of the warp that is fitted together with the dimensions."""
+
+
+class _Shape:
+    """Difference between a comb's characteristic function and the warped ideal, in units of the ripple."""
+
+    def __init__(self, evaluate: Callable[[Floats, Floats], Floats], goal: Goal, order: int) -> None:
+        self._evaluate, self._goal, self._order = evaluate, goal, order
+        self._sample = goal.inside(4 * order + 5)
+        self._last: tuple[bytes, Floats] = (b"", np.empty(0))
+
+    def __call__(self, vector: Floats) -> Floats:
+        dimensions, warp = vector[:-_WARP], vector[-_WARP:]
+        key = dimensions.tobytes()
+        if key != self._last[0]:
+            self._last = key, self._evaluate(dimensions, self._sample)
+        found = self._last[1]
+        wanted = self._goal.target(self._sample, self._order, warp)
+        sign = 1.0 if float(found @ wanted) >= 0 else -1.0
+        difference: Floats = (sign * found - wanted) / self._goal.level
+        if self._goal.return_loss is None:
+            difference[[0, -1]] *= 10.0
+        return difference
+
+
+def _worst(found: Floats, goal: Goal) -> float:
+    return float(np.max(np.abs(found)) / goal.level)
+
+
+def _scales(start: Dimensions, order: int, goal: Goal) -> Floats:
+    """Steps that change the response about equally, so that the fit is well conditioned. [m]"""
+    bandwidth = (goal.upper - goal.lower) / np.sqrt(goal.lower * goal.upper)
+    gaps = [0.5 * gap for gap in start.gaps]
+    lengths = [bandwidth * length for length in start.lengths]
+    return np.array([*gaps, *lengths, 0.5 * start.tap])
+
+
+def _jacobian(function: Residual, vector: Floats, value: Floats, step: float = 1e-4) -> Floats:
+    columns = []
+    # from the last to the first: the warp comes last and needs no new response
+    for i in reversed(range(len(vector))):
+        moved = vector.copy()
+        moved[i] += step
+        columns.append((function(moved) - value) / step)
+    return np.stack(columns[::-1], axis=1)
+
+
+def _least_squares(function: Residual, vector: Floats, enough: float, rounds: int = 25) -> Floats:
+    """Levenberg-Marquardt with steps limited to a fraction of each dimension."""
+    value = function(vector)
+    jacobian = _jacobian(function, vector, value)
+    damping = 1e-2
+    for _ in range(rounds):
+        normal = jacobian.T @ jacobian
+        gradient = jacobian.T @ value
+        step = -np.linalg.solve(normal + damping * np.diag(np.diag(normal)), gradient)
+        step *= min(1.0, 0.5 / float(np.max(np.abs(step))))
+        try:
+            trial = function(vector + step)
+        except InputError:
+            damping *= 10
+            continue
+        if float(trial @ trial) < float(value @ value):
+            gain = 1 - float(trial @ trial) / float(value @ value)
+            vector, value = vector + step, trial
+            damping = max(damping / 5, 1e-9)
+            if gain < 1e-3 or float(np.max(np.abs(value))) < enough:
+                break
+            jacobian = _jacobian(function, vector, value)
+        else:
+            damping *= 8
+            if damping > 1e6:
+                break
+    return vector
+
+
+def _equalise(
+    evaluate: Callable[[Floats, Floats], Floats], vector: Floats, goal: Goal, order: int, rounds: int = 12
+) -> Floats:
+    """Newton's method on the heights of all ripples and of both band edges, which are as many as the unknowns."""
+    nodes = goal.inside(4 * order + 9)
+    centre, half = (goal.lower + goal.upper) / 2, (goal.upper - goal.lower) / 2
+    basis = np.linalg.inv(chebyshev.chebvander((nodes - centre) / half, len(nodes) - 1))
+
+    def heights(trial: Floats) -> Floats | None:
+        series = basis @ evaluate(trial, nodes)
+        series = chebyshev.chebtrim(series, 1e-7 * float(np.max(np.abs(series))))
+        turns = chebyshev.chebroots(chebyshev.chebder(series))
+        inner = np.sort(turns[(np.abs(turns.imag) < 1e-6) & (np.abs(turns.real) < 1)].real)
+        if len(inner) != order - 1:
+            return None
+        places = np.concatenate([[-1.0], inner, [1.0]])
+        result: Floats = np.log(np.abs(chebyshev.chebval(places, series)) / goal.level)
+        return result
+
+    value = heights(vector)
+    if value is None:
+        return vector
+    jacobian = None
+    for _ in range(rounds):
+        if float(np.max(np.abs(value))) < 1e-3:
+            break
+        if jacobian is None:
+            columns = []
+            for i in range(len(vector)):
+                moved = vector.copy()
+                moved[i] += 1e-4
+                after = heights(moved)
+                if after is None:
+                    return vector
+                columns.append((after - value) / 1e-4)
+            jacobian = np.stack(columns, axis=1)
+        step = -np.linalg.solve(jacobian, value)
+        step *= min(1.0, 0.3 / float(np.max(np.abs(step))))
+        trial = heights(vector + step)
+        shrink = 0
+        while (trial is None or np.max(np.abs(trial)) > np.max(np.abs(value))) and shrink < 6:
+            step /= 2
+            shrink += 1
+            trial = heights(vector + step)
+        if trial is None:
+            break
+        # Broyden's rank-one update spares a new Jacobian while the steps succeed
+        if shrink:
+            jacobian_next = None
+        else:
+            jacobian_next = jacobian + np.outer(trial - value - jacobian @ step, step) / float(step @ step)
+        vector, value, jacobian = vector + step, trial, jacobian_next
+    return vector
