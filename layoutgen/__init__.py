@@ -26,10 +26,14 @@ _HOME = {
 __all__ = [*_HOME, "__version__"]
 
 if TYPE_CHECKING:
-    from layoutgen.design import Design, design
-    from layoutgen.errors import InputError, InputErrors, LayoutError
-    from layoutgen.library import Library
-    from layoutgen.spec import Spec, load_spec
+    from layoutgen.design import Design as Design
+    from layoutgen.design import design as design
+    from layoutgen.errors import InputError as InputError
+    from layoutgen.errors import InputErrors as InputErrors
+    from layoutgen.errors import LayoutError as LayoutError
+    from layoutgen.library import Library as Library
+    from layoutgen.spec import Spec as Spec
+    from layoutgen.spec import load_spec as load_spec
 
 
 def __getattr__(name: str) -> Any:

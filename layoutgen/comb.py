@@ -179,8 +179,17 @@ class ChipLoad(_Checked):
     vias: ViaRow
 
     def __post_init__(self) -> None:
-        self._positive("capacitance", "body_length", "body_width", "body_height", "land_length",
-                       "land_width", "land_gap", "pad_length", "pad_width")
+        self._positive(
+            "capacitance",
+            "body_length",
+            "body_width",
+            "body_height",
+            "land_length",
+            "land_width",
+            "land_gap",
+            "pad_length",
+            "pad_width",
+        )
         self._not_negative("tolerance", "resistance", "inductance", "current_height")
         self._require(self.via_offset >= self.land_length, "via_offset", "must lie beyond the second land")
         self._require(self.pad_length > self.via_offset, "pad_length", "must contain the vias")
@@ -223,8 +232,11 @@ class Resonator(_Checked):
     def __post_init__(self) -> None:
         self._require(len(self.segments) > 0, "segments", "must hold at least one segment")
         self._require(self.overhang >= self.short.pad / 2, "overhang", "must contain the via pads")
-        self._require(self.segments[0].width >= self.short.width - 1e-9, "segments",
-                      "the first must be as wide as the via row")
+        self._require(
+            self.segments[0].width >= self.short.width - 1e-9,
+            "segments",
+            "the first must be as wide as the via row",
+        )
 
     @property
     def length(self) -> float:

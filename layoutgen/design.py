@@ -107,7 +107,10 @@ def _style(spec: Spec) -> Style:
     """The shop's capability and the part's name, as drawing choices in millimetres."""
     shop = spec.board.shop
     return Style(
-        part_number=spec.part.number, revision=spec.part.revision, grid=spec.board.grid * 1e3,
-        mask_expansion=shop.mask_expansion * 1e3, mask_dam=shop.mask_web * 1e3,
+        part_number=spec.part.number,
+        revision=spec.part.revision,
+        grid=spec.board.grid * 1e3,
+        mask_expansion=shop.mask_expansion * 1e3,
+        mask_dam=shop.mask_web * 1e3,
         edge_pullback=shop.conductor_to_edge * 1e3,
     )

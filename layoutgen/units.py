@@ -7,8 +7,17 @@ import re
 from decimal import Decimal
 
 UNITS: dict[str, dict[str, float]] = {
-    "length": {"m": 1.0, "cm": 1e-2, "mm": 1e-3, "um": 1e-6, "µm": 1e-6, "μm": 1e-6, "nm": 1e-9,
-               "mil": 25.4e-6, "in": 25.4e-3},
+    "length": {
+        "m": 1.0,
+        "cm": 1e-2,
+        "mm": 1e-3,
+        "um": 1e-6,
+        "µm": 1e-6,
+        "μm": 1e-6,
+        "nm": 1e-9,
+        "mil": 25.4e-6,
+        "in": 25.4e-3,
+    },
     "frequency": {"Hz": 1.0, "kHz": 1e3, "MHz": 1e6, "GHz": 1e9},
     "capacitance": {"F": 1.0, "uF": 1e-6, "nF": 1e-9, "pF": 1e-12, "fF": 1e-15},
     "inductance": {"H": 1.0, "uH": 1e-6, "nH": 1e-9, "pH": 1e-12},
@@ -23,9 +32,19 @@ UNITS: dict[str, dict[str, float]] = {
 """Accepted units of each dimension and their factor to SI; levels stay in decibels."""
 
 _QUANTITY = re.compile(r"^\s*([+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)\s*(\S*)\s*$")
-_EXAMPLE = {"length": "0.813 mm", "frequency": "1.69 GHz", "capacitance": "3.3 pF", "inductance": "0.1 nH",
-            "resistance": "50 ohm", "level": "20 dB", "angle": "45 deg", "conductivity": "58 MS/m",
-            "per kelvin": "50 ppm/K", "voltage": "50 V", "temperature": "25 C"}
+_EXAMPLE = {
+    "length": "0.813 mm",
+    "frequency": "1.69 GHz",
+    "capacitance": "3.3 pF",
+    "inductance": "0.1 nH",
+    "resistance": "50 ohm",
+    "level": "20 dB",
+    "angle": "45 deg",
+    "conductivity": "58 MS/m",
+    "per kelvin": "50 ppm/K",
+    "voltage": "50 V",
+    "temperature": "25 C",
+}
 
 
 def parse_quantity(text: object, dimension: str) -> float:

@@ -23,7 +23,15 @@ from layoutgen.lines import (
     via_resistance,
 )
 
-__all__ = ["ChipRow", "GroundedRow", "chip_row", "grounded_row", "open_end", "overhang_capacitance", "step_capacitances"]
+__all__ = [
+    "ChipRow",
+    "GroundedRow",
+    "chip_row",
+    "grounded_row",
+    "open_end",
+    "overhang_capacitance",
+    "step_capacitances",
+]
 
 Floats = NDArray[np.float64]
 Complexes = NDArray[np.complex128]
@@ -49,8 +57,14 @@ class GroundedRow:
     def resistance(self, frequency: Floats) -> Floats:
         """Resistance of each strip's vias in parallel, shape (n_freq, n). [ohm]"""
         columns = [
-            via_resistance(frequency, height=self.stack.height, radius=row.drill / 2, plating=row.plating,
-                           conductivity=self.stack.conductivity) / row.count
+            via_resistance(
+                frequency,
+                height=self.stack.height,
+                radius=row.drill / 2,
+                plating=row.plating,
+                conductivity=self.stack.conductivity,
+            )
+            / row.count
             for row in self.rows
         ]
         return np.stack(columns, axis=-1)
@@ -58,7 +72,7 @@ class GroundedRow:
     def impedance(self, frequency: Floats, *, lossy: bool) -> Complexes:
         """Impedance matrix to ground, shape (n_freq, n, n). [ohm]"""
         omega = 2 * np.pi * frequency
-        result: Complexes = 1j * omega[:, None, None] * self.inductance
+        result = np.asarray(1j * omega[:, None, None] * self.inductance, dtype=np.complex128)
         if lossy:
             index = np.arange(len(self.rows))
             result[:, index, index] += self.resistance(frequency)
@@ -71,7 +85,9 @@ def grounded_row(
     """Grounded ends of strips of given widths on given centre lines, each with its row of vias. [m]"""
     inductance = grounded_ends_inductance(
         positions=[[x + offset for offset in row.offsets] for x, row in zip(centres, rows, strict=True)],
-        radii=[row.drill / 2 for row in rows], strip_centres=list(centres), strip_widths=list(widths),
+        radii=[row.drill / 2 for row in rows],
+        strip_centres=list(centres),
+        strip_widths=list(widths),
         height=stack.height,
     )
     return GroundedRow(inductance=inductance, rows=tuple(rows), stack=stack)
@@ -105,7 +121,7 @@ class ChipRow:
         index = np.arange(len(self.capacitance))
         below = np.linalg.inv(self.ground.impedance(frequency, lossy=lossy_vias))
         below[:, index, index] += 1j * omega[:, None] * self.pad_capacitance
-        total = np.linalg.inv(below) + 1j * omega[:, None, None] * self.path
+        total = np.asarray(np.linalg.inv(below) + 1j * omega[:, None, None] * self.path)
         total[:, index, index] += 1 / (1j * omega[:, None] * self.capacitance)
         if lossy_part:
             total[:, index, index] += self.resistance
@@ -125,8 +141,12 @@ def chip_row(comb: Comb, strips: Sequence[int]) -> ChipRow:
     loads = [_load(comb.resonators[i]) for i in strips]
     centres = [comb.resonators[i].x for i in strips]
     first = loads[0]
-    body = path_inductance(centres=centres, width=first.body_width,
-                           height=stack.height + stack.conductor + first.current_height, length=first.span)
+    body = path_inductance(
+        centres=centres,
+        width=first.body_width,
+        height=stack.height + stack.conductor + first.current_height,
+        length=first.span,
+    )
     pad = path_inductance(centres=centres, width=first.pad_width, height=stack.height, length=first.pad_path)
     residual = np.diag([load.inductance for load in loads])
     pads = []
@@ -136,7 +156,9 @@ def chip_row(comb: Comb, strips: Sequence[int]) -> ChipRow:
         capacitance=np.array([load.capacitance for load in loads]),
         resistance=np.array([load.resistance for load in loads]),
         path=body + pad + residual,
-        ground=grounded_row(stack, [load.vias for load in loads], centres, [load.pad_width for load in loads]),
+        ground=grounded_row(
+            stack, [load.vias for load in loads], centres, [load.pad_width for load in loads]
+        ),
         pad_capacitance=np.array(pads),
     )
 
@@ -155,11 +177,24 @@ def open_end(resonator: Resonator, stack: Stack) -> float:
 @lru_cache(maxsize=1024)
 def _open_end(width: float, load: ChipLoad | None, stack: Stack) -> float:
     if load is None:
-        return open_end_capacitance(width=width, height=stack.height, eps_r=stack.eps_r, thickness=stack.conductor)
-    ends = end_facing_ground(width=width, facing_width=load.pad_width, gap=load.land_gap, height=stack.height,
-                             eps_r=stack.eps_r, thickness=stack.conductor)
-    body = body_capacitance(width=load.body_width, height=stack.height + stack.conductor + load.current_height,
-                            slab=stack.height, eps_r=stack.eps_r, length=load.span)
+        return open_end_capacitance(
+            width=width, height=stack.height, eps_r=stack.eps_r, thickness=stack.conductor
+        )
+    ends = end_facing_ground(
+        width=width,
+        facing_width=load.pad_width,
+        gap=load.land_gap,
+        height=stack.height,
+        eps_r=stack.eps_r,
+        thickness=stack.conductor,
+    )
+    body = body_capacitance(
+        width=load.body_width,
+        height=stack.height + stack.conductor + load.current_height,
+        slab=stack.height,
+        eps_r=stack.eps_r,
+        length=load.span,
+    )
     return ends.shunt + ends.across + body / 2
 
 
@@ -181,8 +216,9 @@ def step_capacitances(resonator: Resonator, stack: Stack) -> list[tuple[float, f
 
 @lru_cache(maxsize=1024)
 def _step(wide: float, narrow: float, stack: Stack) -> float:
-    extension = step_extension(wide=wide, narrow=narrow, height=stack.height, eps_r=stack.eps_r,
-                               thickness=stack.conductor)
+    extension = step_extension(
+        wide=wide, narrow=narrow, height=stack.height, eps_r=stack.eps_r, thickness=stack.conductor
+    )
     return _per_metre(wide, stack) * extension
 
 

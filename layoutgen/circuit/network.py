@@ -1,8 +1,9 @@
 """Nodal admittance matrix of a comb over frequency, and what is read from it.
 
-Every element is passive and reciprocal at every frequency, so the network is. The losses of coupled lines enter
-mode by mode: the modes are those of the lossless section, the resistance and conductance of each the diagonal terms
-of the loss matrices in that basis (first-order perturbation, good while the loss per radian is small).
+Every element is passive and reciprocal at every frequency, so the network is. The losses of coupled
+lines enter mode by mode: the modes are those of the lossless section, the resistance and conductance of
+each the diagonal terms of the loss matrices in that basis (first-order perturbation, good while the loss
+per radian is small).
 """
 
 from __future__ import annotations
@@ -24,7 +25,7 @@ from layoutgen.circuit.ends import (
 from layoutgen.circuit.sections import Section, SectionSolver, cut_into_sections, segment_at
 from layoutgen.comb import Comb, Feed
 from layoutgen.errors import InputError
-from layoutgen.lines import LossMatrices, Modes, surface_resistance, tap_capacitance
+from layoutgen.lines import LossMatrices, Modes, line_admittance, surface_resistance, tap_capacitance
 
 __all__ = ["ALL_LOSSES", "Circuit", "Mechanism"]
 
@@ -60,8 +61,12 @@ class Circuit:
         self._place_nodes()
         stack = comb.stack
         resonators = [comb.resonators[i] for i in self.strips]
-        self._ground = grounded_row(stack, [r.short for r in resonators], [r.x for r in resonators],
-                                    [r.segments[0].width for r in resonators])
+        self._ground = grounded_row(
+            stack,
+            [r.short for r in resonators],
+            [r.x for r in resonators],
+            [r.segments[0].width for r in resonators],
+        )
         self._chips = chip_row(comb, self.strips) if resonators[0].load is not None else None
 
     # -- what is asked of it
@@ -89,8 +94,7 @@ class Circuit:
         excitation = np.zeros((matrix.shape[1], 2))
         excitation[0, 0], excitation[1, 1] = root
         waves = np.linalg.solve(matrix, excitation)[:, :2, :]
-        result: Complexes = 2 * root[None, :, None] * waves - np.eye(2)
-        return result
+        return np.asarray(2 * root[None, :, None] * waves - np.eye(2), dtype=np.complex128)
 
     def input_admittance(
         self, frequency: ArrayLike, strip: int, losses: frozenset[Mechanism] = NO_LOSSES
@@ -101,8 +105,7 @@ class Circuit:
         node = self._node(strip, self.comb.resonators[strip].load_position)
         excitation = np.zeros((matrix.shape[1], 1))
         excitation[node] = 1
-        result: Complexes = 1 / np.linalg.solve(matrix, excitation)[:, node, 0]
-        return result
+        return np.asarray(1 / np.linalg.solve(matrix, excitation)[:, node, 0], dtype=np.complex128)
 
     def capacitor_resonance(self) -> float | None:
         """Lowest series resonance of the mounted chips; None without chips. [Hz]"""
@@ -134,7 +137,7 @@ class Circuit:
         return even, odd
 
     def line_at_ground(self) -> tuple[Modes, float]:
-        """Modes of the lowest section, and the length of its first line as inductive as the grounded end. [m]"""
+        """Modes of the lowest section, and the length of line as inductive as a grounded end. [m]"""
         modes = self._modes[0]
         stiffness = modes.current @ modes.current.T
         per_metre = np.linalg.inv(stiffness)[0, 0]
@@ -190,21 +193,19 @@ class Circuit:
         self, f: Floats, modes: Modes, loss: LossMatrices | None, length: float, losses: frozenset[Mechanism]
     ) -> tuple[Complexes, Complexes]:
         """Admittance of a piece of coupled line: at one end, and between the ends."""
-        omega = 2 * np.pi * f[:, None]
-        series = 1j * omega * np.ones_like(modes.slowness)
-        shunt = 1j * omega * modes.slowness**2
+        if loss is None:
+            return line_admittance(f, modes, length)
         stack = self.comb.stack
-        if loss is not None and "conductor" in losses:
-            surface = surface_resistance(f, conductivity=stack.conductivity, roughness=stack.roughness)
-            series = series + surface[:, None] * _diagonal(modes.current, loss.resistance)
-        if loss is not None and "dielectric" in losses:
-            shunt = shunt + omega * stack.tan_delta * _diagonal(modes.voltage, loss.capacitance_slope)
-        exponent = np.sqrt(series * shunt) * length
-        admittance = np.sqrt(shunt / series)
-        current = modes.current
-        near = (current * (admittance / np.tanh(exponent))[:, None, :]) @ current.T
-        far = (current * (-admittance / np.sinh(exponent))[:, None, :]) @ current.T
-        return near, far
+        resistance, slope = (row[None, :] for row in loss.of_modes(modes))
+        surface = surface_resistance(f, conductivity=stack.conductivity, roughness=stack.roughness)[:, None]
+        omega = 2 * np.pi * f[:, None]
+        return line_admittance(
+            f,
+            modes,
+            length,
+            resistance=surface * resistance if "conductor" in losses else 0.0,
+            conductance=omega * stack.tan_delta * slope if "dielectric" in losses else 0.0,
+        )
 
     def _add_ends(self, matrix: Complexes, f: Floats, losses: frozenset[Mechanism]) -> None:
         omega, stack = 2 * np.pi * f, self.comb.stack
@@ -219,8 +220,11 @@ class Circuit:
             )
         for i in self.strips:
             resonator = self.comb.resonators[i]
-            shunts = [(0.0, overhang_capacitance(resonator, stack)), (resonator.length, open_end(resonator, stack)),
-                      *step_capacitances(resonator, stack)]
+            shunts = [
+                (0.0, overhang_capacitance(resonator, stack)),
+                (resonator.length, open_end(resonator, stack)),
+                *step_capacitances(resonator, stack),
+            ]
             for height, capacitance in shunts:
                 node = self._node(i, height)
                 matrix[:, node, node] += 1j * omega * capacitance
@@ -237,20 +241,22 @@ class Circuit:
         matrix[:, port, node] += far[:, 0, 0]
         matrix[:, node, port] += far[:, 0, 0]
         line_width = segment_at(comb.resonators[feed.resonator], feed.tap).width
-        fringe = tap_capacitance(line_width=line_width, feed_width=feed.width, height=stack.height,
-                                 eps_r=stack.eps_r, thickness=stack.conductor)
+        fringe = tap_capacitance(
+            line_width=line_width,
+            feed_width=feed.width,
+            height=stack.height,
+            eps_r=stack.eps_r,
+            thickness=stack.conductor,
+        )
         matrix[:, node, node] += 2j * np.pi * f * fringe
-
-
-def _diagonal(basis: Floats, matrix: Floats) -> Floats:
-    result: Floats = np.einsum("im,ij,jm->m", basis, matrix, basis)
-    return result
 
 
 def _frequencies(frequency: ArrayLike) -> Floats:
     f = np.atleast_1d(np.asarray(frequency, dtype=float))
     if not bool(np.all((f > 0) & np.isfinite(f))):
-        raise InputError("Circuit", "frequency", frequency, "every value must be finite and greater than 0 Hz")
+        raise InputError(
+            "Circuit", "frequency", frequency, "every value must be finite and greater than 0 Hz"
+        )
     return f
 
 
@@ -258,7 +264,9 @@ def _first_zero(f: Floats, susceptance: Floats) -> float:
     """First upward zero of a susceptance over frequency, by inverse interpolation."""
     rising = np.flatnonzero((susceptance[:-1] < 0) & (susceptance[1:] >= 0))
     if not len(rising):
-        raise InputError("Circuit", "near", f"{f[0]:.4g} to {f[-1]:.4g} Hz", "no resonance lies in this range")
+        raise InputError(
+            "Circuit", "near", f"{f[0]:.4g} to {f[-1]:.4g} Hz", "no resonance lies in this range"
+        )
     at = int(rising[0])
     around = slice(max(at - 1, 0), at + 3)
     return float(PchipInterpolator(susceptance[around], f[around])(0.0))

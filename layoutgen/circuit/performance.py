@@ -1,4 +1,4 @@
-"""Figures of a comb read from its response: bands, losses and what causes them, spurious resonances, unloaded Q."""
+"""Figures of a comb read from its response: bands, losses and their causes, spurious, unloaded Q."""
 
 from __future__ import annotations
 
@@ -107,7 +107,7 @@ def measure(
         Asked level of an equal-ripple filter. [dB]
     """
     circuit = Circuit(comb, solver)
-    centre, band = float(np.sqrt(lower * upper)), upper - lower
+    centre = float(np.sqrt(lower * upper))
     inside = np.linspace(lower, upper, 401)
     lossy = circuit.scattering(inside)
     lossless = circuit.scattering(inside, NO_LOSSES)
@@ -119,15 +119,21 @@ def measure(
     split = _split(circuit, marks)
     edge = 0 if edge_losses[0] > edge_losses[2] else 2
     return Performance(
-        centre=centre, lower_3db=lower_3db, upper_3db=upper_3db, lower_ripple=ripple[0], upper_ripple=ripple[1],
+        centre=centre,
+        lower_3db=lower_3db,
+        upper_3db=upper_3db,
+        lower_ripple=ripple[0],
+        upper_ripple=ripple[1],
         return_loss=float(np.min(_db(lossy[:, 0, 0]))),
         lossless_return_loss=float(np.min(_db(lossless[:, 0, 0]))),
-        worst_loss=float(np.max(loss)), midband_loss=float(edge_losses[1]),
-        lower_edge_loss=float(edge_losses[0]), upper_edge_loss=float(edge_losses[2]),
+        worst_loss=float(np.max(loss)),
+        midband_loss=float(edge_losses[1]),
+        lower_edge_loss=float(edge_losses[0]),
+        upper_edge_loss=float(edge_losses[2]),
         midband_split={m: float(v[1]) for m, v in split.items()},
         edge_split={m: float(v[edge]) for m, v in split.items()},
         unloaded_q=unloaded_q(comb, solver, centre),
-        spurious=_spurious(comb, solver, upper + band / 2),
+        spurious=_spurious(comb, solver, 1.3 * upper),
         capacitor_resonance=circuit.capacitor_resonance(),
     )
 
@@ -137,9 +143,13 @@ def unloaded_q(comb: Comb, solver: SectionSolver, near: float) -> tuple[float, .
     found: dict[object, float] = {}
     values = []
     for i, resonator in enumerate(comb.resonators):
-        # resonators that differ by their place only have one Q, unless walls make the place matter
-        key = (resonator.segments, resonator.load, resonator.x if comb.side_walls else 0.0,
-               tuple(feed.tap for feed in comb.feeds if feed.resonator == i))
+        # resonators that differ by their place only have one Q, unless walls make it matter
+        key = (
+            resonator.segments,
+            resonator.load,
+            resonator.x if comb.side_walls else 0.0,
+            tuple(feed.tap for feed in comb.feeds if feed.resonator == i),
+        )
         if key not in found:
             found[key] = _q_of(Circuit(comb, solver, strips=[i]), i, near)
         values.append(found[key])
@@ -179,8 +189,9 @@ def _spurious(comb: Comb, solver: SectionSolver, above: float) -> Spurious:
 def box_mode(comb: Comb) -> float:
     """Lowest cavity mode of a covered board with walls at its edges. [Hz]
 
-    The mode has no variation with height; the layers between ground and cover fill it in series (R. E. Collin,
-    "Field Theory of Guided Waves", 2nd ed., IEEE Press, 1991, ch. 6, in the limit of a low cavity).
+    The mode has no variation with height; the layers between ground and cover fill it in series (R. E.
+    Collin, "Field Theory of Guided Waves", 2nd ed., IEEE Press, 1991, ch. 6, in the limit of a low
+    cavity).
     """
     stack = comb.stack
     assert stack.cover is not None

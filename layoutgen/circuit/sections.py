@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -64,7 +65,7 @@ def cut_into_sections(comb: Comb, strips: Sequence[int]) -> list[Section]:
     planes |= {feed.tap for feed in comb.feeds if feed.resonator in strips}
     heights = _merged(sorted(planes))
     sections = []
-    for bottom, top in zip(heights[:-1], heights[1:], strict=True):
+    for bottom, top in pairwise(heights):
         middle = (bottom + top) / 2
         present = [i for i in strips if comb.resonators[i].length > middle]
         widths = tuple(segment_at(comb.resonators[i], middle).width for i in present)
@@ -97,19 +98,23 @@ class SectionSolver:
     ----------
     stack : Stack
     reach : float
-        Greatest width of a comb that will be asked for. [m]
+        Greatest width of a comb, or of its board under a cover, that will be asked for. [m]
     """
 
     def __init__(self, stack: Stack, reach: float) -> None:
-        self.stack, self._reach = stack, reach
-        self._solvers: dict[tuple[float, float] | None, LineSolver] = {}
+        self.stack = stack
+        self._solver = LineSolver(
+            height=stack.height,
+            eps_r=stack.eps_r,
+            thickness=stack.conductor,
+            cover=stack.cover,
+            reach=reach,
+        )
         self._matrices: dict[object, tuple[StripMatrices, Modes]] = {}
         self._losses: dict[object, LossMatrices] = {}
         self._single: dict[float, tuple[Modes, LossMatrices]] = {}
 
-    def modes(
-        self, comb: Comb, sections: Sequence[Section]
-    ) -> list[tuple[StripMatrices, Modes]]:
+    def modes(self, comb: Comb, sections: Sequence[Section]) -> list[tuple[StripMatrices, Modes]]:
         """Matrices and modes of each section."""
         return [self._matrices[key] for key in self._solve(comb, sections, with_losses=False)]
 
@@ -120,21 +125,12 @@ class SectionSolver:
     def single(self, width: float) -> tuple[Modes, LossMatrices]:
         """An isolated strip without side walls."""
         if width not in self._single:
-            solver = self._solver(None)
-            centre, widths = np.zeros(1), np.array([width])
-            matrices = solver.matrices(centre, widths, [[0]])[0]
-            self._single[width] = matrices.modes(), solver.losses(centre, widths, [[0]])[0]
+            matrices = self._solver.matrices([0.0], [width], [[0]])[0]
+            self._single[width] = matrices.modes(), self._solver.losses([0.0], [width], [[0]])[0]
         return self._single[width]
 
-    def _solver(self, walls: tuple[float, float] | None) -> LineSolver:
-        if walls not in self._solvers:
-            stack = self.stack
-            self._solvers[walls] = LineSolver(height=stack.height, eps_r=stack.eps_r, thickness=stack.conductor,
-                                              cover=stack.cover, walls=walls, reach=self._reach)
-        return self._solvers[walls]
-
     def _solve(self, comb: Comb, sections: Sequence[Section], *, with_losses: bool) -> list[object]:
-        """Keys of the sections' results, solving those that are new, sets of strips that share panels at once."""
+        """Keys of the sections' results; solves the new ones, those that share panels at once."""
         x = np.array([resonator.x for resonator in comb.resonators])
         keys = [_key(comb, section, x) for section in sections]
         known: dict[object, object] = dict(self._losses if with_losses else self._matrices)
@@ -142,15 +138,18 @@ class SectionSolver:
         while new:
             widest = max(new.values(), key=lambda section: len(section.strips))
             width_of = dict(zip(widest.strips, widest.widths, strict=True))
-            shared = {k: s for k, s in new.items()
-                      if all(width_of.get(i) == w for i, w in zip(s.strips, s.widths, strict=True))}
+            shared = {
+                k: s
+                for k, s in new.items()
+                if all(width_of.get(i) == w for i, w in zip(s.strips, s.widths, strict=True))
+            }
             subsets = [[widest.strips.index(i) for i in s.strips] for s in shared.values()]
             centres, widths = x[list(widest.strips)], np.array(widest.widths)
-            solver = self._solver(comb.side_walls)
             if with_losses:
-                self._losses.update(zip(shared, solver.losses(centres, widths, subsets), strict=True))
+                losses = self._solver.losses(centres, widths, subsets, comb.side_walls)
+                self._losses.update(zip(shared, losses, strict=True))
             else:
-                solved = solver.matrices(centres, widths, subsets)
+                solved = self._solver.matrices(centres, widths, subsets, comb.side_walls)
                 self._matrices.update({k: (m, m.modes()) for k, m in zip(shared, solved, strict=True)})
             new = {k: s for k, s in new.items() if k not in shared}
         return list(keys)

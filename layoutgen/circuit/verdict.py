@@ -72,14 +72,18 @@ def judge(spec: Spec, comb: Comb, solver: SectionSolver) -> Verdict:
     """Measure the comb's predicted response and hold it against every requirement."""
     band = spec.passband
     performance = measure(comb, solver, lower=band.lower, upper=band.upper, return_loss=band.return_loss)
-    judgements = [_return_loss(spec, performance) if band.return_loss is not None else _edges(spec, comb, solver)]
+    judgements = [
+        _return_loss(spec, performance) if band.return_loss is not None else _edges(spec, comb, solver)
+    ]
     if band.insertion_loss is not None:
         judgements.append(_insertion_loss(spec, performance, band.insertion_loss))
     circuit = Circuit(comb, solver)
     for number, stopband in enumerate(spec.stopbands, 1):
         judgements.append(_rejection(spec, circuit, number, stopband, performance))
-    for key, limit, size in (("max_width", spec.board.max_width, comb.width),
-                             ("max_height", spec.board.max_height, comb.height)):
+    for key, limit, size in (
+        ("max_width", spec.board.max_width, comb.width),
+        ("max_height", spec.board.max_height, comb.height),
+    ):
         if limit is not None:
             judgements.append(_size(key, limit, size))
     return Verdict(performance=performance, judgements=tuple(judgements))
@@ -105,11 +109,16 @@ def _return_loss(spec: Spec, performance: Performance) -> Judgement:
     assert asked is not None
     found = performance.return_loss
     return Judgement(
-        requirement="return loss in the pass band, at least", key="passband.return_loss", unit="dB",
-        asked=asked, found=found, margin=found - asked,
-        limit=f"without loss the comb has {performance.lossless_return_loss:.2f} dB; dissipation and the drawing "
-              "grid make the difference",
-        remedy="ask for a slightly deeper passband.return_loss, a finer board.grid or a laminate of less loss",
+        requirement="return loss in the pass band, at least",
+        key="passband.return_loss",
+        unit="dB",
+        asked=asked,
+        found=found,
+        margin=found - asked,
+        limit=f"without loss the comb has {performance.lossless_return_loss:.2f} dB; dissipation and the "
+        "drawing grid make the difference",
+        remedy="size with a deeper margin.return_loss or a wider margin.bandwidth, "
+        "or take a laminate of less loss",
     )
 
 
@@ -119,18 +128,28 @@ def _edges(spec: Spec, comb: Comb, solver: SectionSolver) -> Judgement:
     circuit = Circuit(comb, solver)
     f = np.linspace(band.lower - 0.2 * band.bandwidth, band.upper + 0.2 * band.bandwidth, 2001)
     passing = f[attenuation_db(circuit, f, frozenset()) <= 10 * np.log10(2)]
-    error = max(abs(float(passing[0]) - band.lower), abs(float(passing[-1]) - band.upper)) / band.bandwidth * 100
+    wider = spec.margin.bandwidth / 2
+    off = (abs(float(passing[0]) - band.lower + wider), abs(float(passing[-1]) - band.upper - wider))
+    error = max(off) / band.bandwidth * 100
     return Judgement(
-        requirement="3.01 dB points (lossless) off the asked edges, at most", key="passband.lower",
-        unit="% of bandwidth", asked=1.0, found=error, margin=1.0 - error,
-        limit="the sizing loop or the drawing grid", remedy="choose a finer board.grid",
+        requirement="3.01 dB points (lossless) off the asked edges, at most",
+        key="passband.lower",
+        unit="% of bandwidth",
+        asked=1.0,
+        found=error,
+        margin=1.0 - error,
+        limit="the sizing loop or the drawing grid",
+        remedy="choose a finer board.grid",
     )
 
 
 _HELP = {
     "conductor": ("copper loss", "a thicker laminate, a cover further away, smoother copper or a wider line"),
     "dielectric": ("loss of the laminate", "a laminate with a lower loss tangent"),
-    "capacitor": ("loss of the loading capacitors", "chips of higher Q, or a longer line with smaller capacitors"),
+    "capacitor": (
+        "loss of the loading capacitors",
+        "chips of higher Q, or a longer line with smaller capacitors",
+    ),
     "via": ("resistance of the vias", "more vias at each short"),
 }
 
@@ -144,7 +163,11 @@ def _insertion_loss(spec: Spec, performance: Performance, asked: float) -> Judge
     shares = ", ".join(f"{name} {value:.2f} dB" for name, value in split.items())
     return Judgement(
         requirement=f"insertion loss {'at midband' if flat else 'in the pass band'}, at most",
-        key="passband.insertion_loss", unit="dB", asked=asked, found=found, margin=asked - found,
+        key="passband.insertion_loss",
+        unit="dB",
+        asked=asked,
+        found=found,
+        margin=asked - found,
         limit=f"{what} most of all ({shares}; unloaded Q {min(performance.unloaded_q):.0f})",
         remedy=f"{remedy}; a wider pass band or a lower order also lose less",
     )
@@ -163,17 +186,26 @@ def _rejection(
         remedy = 'a higher passband.order (or "auto"), or a stop band further away'
     return Judgement(
         requirement=f"rejection from {stopband.lower / 1e9:.4g} to {stopband.upper / 1e9:.4g} GHz, at least",
-        key=f"stopband.{number}.rejection", unit="dB", asked=stopband.rejection, found=found,
-        margin=found - stopband.rejection, limit=limit, remedy=remedy,
+        key=f"stopband.{number}.rejection",
+        unit="dB",
+        asked=stopband.rejection,
+        found=found,
+        margin=found - stopband.rejection,
+        limit=limit,
+        remedy=remedy,
     )
 
 
 def _size(key: str, limit: float, size: float) -> Judgement:
     across = key == "max_width"
     return Judgement(
-        requirement=f"board {'width' if across else 'height'}, at most", key=f"board.{key}", unit="mm",
-        asked=limit * 1e3, found=size * 1e3, margin=(limit - size) * 1e3,
+        requirement=f"board {'width' if across else 'height'}, at most",
+        key=f"board.{key}",
+        unit="mm",
+        asked=limit * 1e3,
+        found=size * 1e3,
+        margin=(limit - size) * 1e3,
         limit="resonators, clearances and margins together",
         remedy="a smaller board.clearance or board.margin, a laminate of higher permittivity"
-               + (", a lower order" if across else ", a shorter construction.electrical_length"),
+        + (", a lower order" if across else ", a shorter construction.electrical_length"),
     )

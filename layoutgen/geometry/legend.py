@@ -22,8 +22,11 @@ from layoutgen.geometry.sheet import MM, Sheet
 __all__ = ["Text", "items", "place", "windows"]
 
 _SHRINK = (1.0, 0.8)
-_STEP = 0.25
-"""Distance between the places that are tried. [mm]"""
+_FINE, _COARSE = 0.1, 0.25
+"""Distance along y between the places that are tried, for a text whose x is fixed and for one that may move.
+
+The fine one is less than the room to spare in a row of masked laminate (see `mask.bare_area`). [mm]
+"""
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -139,8 +142,8 @@ def _line(sheet: Sheet, text: str, height: float, middle: float, top: float) -> 
 def _tries(sheet: Sheet, wanted: Point, *, free_x: bool) -> NDArray[np.float64]:
     """Places to try, nearest first; ties go to the lower left."""
     _, _, width, height = sheet.board.bounds
-    ys = np.arange(_STEP, height, _STEP)
-    shifts = np.arange(0.0, width / 2, 2 * _STEP)
+    ys = np.arange(_COARSE, height, _COARSE if free_x else _FINE)
+    shifts = np.arange(0.0, width / 2, 2 * _COARSE)
     xs = wanted[0] + (np.concatenate((-shifts[:0:-1], shifts)) if free_x else np.zeros(1))
     x, y = (values.ravel() for values in np.meshgrid(xs, ys))
     order = np.lexsort((x, y, np.round(np.hypot(x - wanted[0], y - wanted[1]), 6)))

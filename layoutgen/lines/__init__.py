@@ -20,7 +20,7 @@ from layoutgen.lines.microstrip import (
     width_for_impedance,
 )
 from layoutgen.lines.quasistatic import Mesh, StripSystem, solve_strips
-from layoutgen.lines.section import LineSolver, LossMatrices, Modes, StripMatrices
+from layoutgen.lines.section import LineSolver, LossMatrices, Modes, StripMatrices, line_admittance
 from layoutgen.lines.via import goldfarb_pucel_inductance, grounded_ends_inductance, via_resistance
 
 __all__ = [
@@ -40,6 +40,7 @@ __all__ = [
     "end_facing_ground",
     "goldfarb_pucel_inductance",
     "grounded_ends_inductance",
+    "line_admittance",
     "open_end_capacitance",
     "open_end_extension",
     "path_inductance",

@@ -1,8 +1,8 @@
 """A chip capacitor mounted from the end of a strip to a grounded pad: what its path adds.
 
-The path is counted once: the drawn copper, the body as a flat conductor at the true height of its current, and
-only then the residual inductance of the part. Neighbouring chips are coupled by the fields of their paths over the
-ground plane.
+The path is counted once: the drawn copper, the body as a flat conductor at the true height of its
+current, and only then the residual inductance of the part. Neighbouring chips are coupled by the fields
+of their paths over the ground plane.
 
 References
 ----------
@@ -22,9 +22,7 @@ __all__ = ["body_capacitance", "path_inductance"]
 Floats = NDArray[np.float64]
 
 
-def path_inductance(
-    *, centres: ArrayLike, width: float, height: float, length: float
-) -> Floats:
+def path_inductance(*, centres: ArrayLike, width: float, height: float, length: float) -> Floats:
     """Inductance matrix of equal, parallel, flat conductors above the ground plane.
 
     Parameters
@@ -48,9 +46,7 @@ def path_inductance(
     return result
 
 
-def body_capacitance(
-    *, width: float, height: float, slab: float, eps_r: float, length: float
-) -> float:
+def body_capacitance(*, width: float, height: float, slab: float, eps_r: float, length: float) -> float:
     """Capacitance to ground of a chip's body at the height of its current. [F]
 
     Parameters

@@ -63,8 +63,9 @@ def open_end_extension(*, width: float, height: float, eps_r: float, eps_eff: fl
     u = width / height
     require_inside("open_end_extension", "width / height", u, 0.01, 100)
     require_inside("open_end_extension", "eps_r", eps_r, 1, 128)
-    x1 = (0.434907 * (eps_eff**0.81 + 0.26) / (eps_eff**0.81 - 0.189)
-          * (u**0.8544 + 0.236) / (u**0.8544 + 0.87))
+    x1 = (
+        0.434907 * (eps_eff**0.81 + 0.26) / (eps_eff**0.81 - 0.189) * (u**0.8544 + 0.236) / (u**0.8544 + 0.87)
+    )
     x2 = 1 + u**0.371 / (2.358 * eps_r + 1)
     x3 = 1 + 0.5274 * np.arctan(0.084 * u ** (1.9413 / x2)) / eps_eff**0.9236
     x4 = 1 + 0.0377 * np.arctan(0.067 * u**1.456) * (6 - 5 * np.exp(0.036 * (1 - eps_r)))
@@ -96,8 +97,8 @@ def end_facing_ground(
 
     Notes
     -----
-    The constants are from memory. Ratios beyond the stated range are moved to its border: the effect on a loaded
-    resonator is of the order of 1 % of its capacitance.
+    The constants are from memory. Ratios beyond the stated range are moved to its border: the effect on
+    a loaded resonator is of the order of 1 % of its capacitance.
 
     References
     ----------
@@ -110,8 +111,8 @@ def end_facing_ground(
     s = max(gap / height, 0.1)
     q5 = 1.23 / (1 + 0.12 * max(ratio - 1, 0.0) ** 0.9)
     q1 = 0.04598 * (0.03 + u**q5) * (0.272 + 0.07 * eps_r)
-    across = 500e-12 * height * np.exp(-1.86 * s) * q1 * (
-        1 + 4.19 * (1 - np.exp(-0.785 * np.sqrt(1 / u) * ratio))
+    across = (
+        500e-12 * height * np.exp(-1.86 * s) * q1 * (1 + 4.19 * (1 - np.exp(-0.785 * np.sqrt(1 / u) * ratio)))
     )
     q2 = 0.107 * (u + 9) * s**3.23 + 2.09 * s**1.05 * (1.5 + 0.3 * u) / (1 + 0.6 * u)
     q3 = np.exp(-0.5978 * ratio**1.35) - 0.55
@@ -131,9 +132,9 @@ def step_extension(*, wide: float, narrow: float, height: float, eps_r: float, t
 
     Notes
     -----
-    The open-end extension of the wide line in proportion to the part of its end that is open, a first-order
-    estimate (E. Hammerstad, "Computer-aided design of microstrip couplers with accurate discontinuity models",
-    IEEE MTT-S Digest, 1981; from memory).
+    The open-end extension of the wide line in proportion to the part of its end that is open, a
+    first-order estimate (E. Hammerstad, "Computer-aided design of microstrip couplers with accurate
+    discontinuity models", IEEE MTT-S Digest, 1981; from memory).
     """
     line = single_line(width=wide, height=height, eps_r=eps_r, thickness=thickness)
     extension = open_end_extension(width=wide, height=height, eps_r=eps_r, eps_eff=float(line.eps_eff))
@@ -145,11 +146,11 @@ def tap_capacitance(
 ) -> float:
     """Change of the shunt capacitance at a tap: the feed takes the place of the line's fringing field. [F]
 
-    The feed's own capacitance is counted from the edge of the line, so the fringe of that edge over the feed's width
-    is taken away: half of what the line's capacitance exceeds that of a parallel plate. Negative. An estimate
-    from the two-dimensional fields, of the order of 0.1 % of a resonator's capacitance.
+    The feed's own capacitance is counted from the edge of the line, so the fringe of that edge over the
+    feed's width is taken away: half of what the line's capacitance exceeds that of a parallel plate.
+    Negative. An estimate from the two-dimensional fields, of the order of 0.1 % of a resonator's
+    capacitance.
     """
     line = single_line(width=line_width, height=height, eps_r=eps_r, thickness=thickness)
     plate = VACUUM_PERMITTIVITY * eps_r * line_width / height
     return -feed_width * max(float(line.capacitance) - plate, 0.0) / 2
-

@@ -7,28 +7,31 @@ The potential at height ``u`` above the slab of a unit line charge at height ``v
 
     d = |u - v|, s = u + v,  R = -(K + e^-2kh) / (1 + K e^-2kh),  K = (eps_r - 1) / (eps_r + 1),
 
-c being the height of the cover. The two logarithms that are singular on a strip (the charge itself and its image
-in the upper face of the slab, of strength -K) are integrated in closed form where panels are; this module holds
-the smooth rest, tabulated along x.
+c being the height of the cover. The two logarithms that are singular on a strip (the charge itself and
+its image in the upper face of the slab, of strength -K) are integrated in closed form where panels are;
+this module holds the smooth rest, tabulated along x.
 
 References
 ----------
-P. Silvester, "TEM wave properties of microstrip transmission lines", Proc. IEE 115, 1968 (images of the slab).
-R. E. Collin, "Field Theory of Guided Waves", 2nd ed., IEEE Press, 1991, ch. 4 (transform of the layered
-problem). The expressions above were derived anew for a charge in the air region; the tests compare them with
-independent solutions.
+P. Silvester, "TEM wave properties of microstrip transmission lines", Proc. IEE 115, 1968 (images of the
+slab).
+R. E. Collin, "Field Theory of Guided Waves", 2nd ed., IEEE Press, 1991, ch. 4 (transform of the
+layered problem). The expressions above were derived anew for a charge in the air region; the tests
+compare them with independent solutions.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.polynomial.legendre import leggauss
 from numpy.typing import NDArray
 from scipy.interpolate import CubicSpline
 
-__all__ = ["KernelTable", "build_kernel", "log_twice"]
+from layoutgen.errors import InputError
+
+__all__ = ["KernelTable", "add_walls", "build_kernel", "log_twice"]
 
 Floats = NDArray[np.float64]
 
@@ -47,8 +50,10 @@ class KernelTable:
         Strength K of the image in the upper face of the slab. [1]
     thickness : float
         Of the strips. [m]
-    reach : float
-        Largest distance along x that the tables cover. [m]
+    covered : bool
+        True under a cover, where potentials die out along x.
+    grid : ndarray
+        Distances of the tables. [m]
     rest : tuple of three splines
         Second antiderivative along x of the smooth rest, for the face pairs 00, 01 and 11. [m^2]
     mirrored : tuple of three splines or None
@@ -57,9 +62,21 @@ class KernelTable:
 
     image: float
     thickness: float
-    reach: float
+    covered: bool
+    grid: Floats
     rest: tuple[CubicSpline, CubicSpline, CubicSpline]
-    mirrored: tuple[CubicSpline, CubicSpline, CubicSpline] | None
+    mirrored: tuple[CubicSpline, CubicSpline, CubicSpline] | None = None
+
+    @property
+    def reach(self) -> float:
+        """Largest distance that the tables cover. [m]"""
+        return float(self.grid[-1])
+
+    @property
+    def heights(self) -> tuple[tuple[float, float], ...]:
+        """Sum and difference of the two heights, for each face pair. [m]"""
+        t = self.thickness
+        return (0.0, 0.0), (t, t), (2 * t, 0.0)
 
 
 def log_twice(x: Floats, y: Floats | float) -> Floats:
@@ -73,15 +90,9 @@ def log_twice(x: Floats, y: Floats | float) -> Floats:
 
 
 def build_kernel(
-    *,
-    height: float,
-    eps_r: float,
-    thickness: float,
-    cover: float | None,
-    wall_spacing: float | None,
-    reach: float,
+    *, height: float, eps_r: float, thickness: float, cover: float | None, reach: float
 ) -> KernelTable:
-    """Tabulate the smooth part of the Green's function of one stack-up.
+    """Tabulate the smooth part of the Green's function of one stack-up without side walls.
 
     Parameters
     ----------
@@ -93,8 +104,6 @@ def build_kernel(
         Of the strips that lie on the slab, zero allowed. [m]
     cover : float or None
         Height of a metal cover above the slab. [m]
-    wall_spacing : float or None
-        Distance between two metal side walls. [m]
     reach : float
         Largest distance along x that will be asked for. [m]
 
@@ -103,36 +112,60 @@ def build_kernel(
     KernelTable
     """
     x = _grid(height, min(height, cover) if cover else height, reach)
-    pairs = ((0.0, 0.0), (thickness, thickness), (2 * thickness, 0.0))  # (s, d) of 00, 01, 11
+    pairs = ((0.0, 0.0), (thickness, thickness), (2 * thickness, 0.0))
     image = (eps_r - 1) / (eps_r + 1)
     rest = [_slab_images(x, s, height, image) for s, _ in pairs]
     if cover is not None:
         rest = [r + _cover_part(x, s, d, height, image, cover) for r, (s, d) in zip(rest, pairs, strict=True)]
-    mirrored = None
-    if wall_spacing is not None:
-        rows = [_wall_sums(rest[i], x, s, d, image, wall_spacing) for i, (s, d) in enumerate(pairs)]
-        rest = [r + row[0](x) for r, row in zip(rest, rows, strict=True)]
-        a, b, c = (row[1] for row in rows)
-        mirrored = (a, b, c)
-    first, second, third = (CubicSpline(x, r, bc_type=((1, 0.0), "not-a-knot")) for r in rest)
-    return KernelTable(image=image, thickness=thickness, reach=reach, rest=(first, second, third),
-                       mirrored=mirrored)
+    first, second, third = (_even_spline(x, r) for r in rest)
+    return KernelTable(
+        image=image, thickness=thickness, covered=cover is not None, grid=x, rest=(first, second, third)
+    )
+
+
+def add_walls(kernel: KernelTable, spacing: float) -> KernelTable:
+    """The same stack-up between two metal side walls.
+
+    Parameters
+    ----------
+    kernel : KernelTable
+        Without walls. An open one must reach over thirteen spacings, since potentials fall slowly there.
+    spacing : float
+        Between the walls. [m]
+
+    Raises
+    ------
+    InputError
+        If the table does not reach far enough.
+    """
+    needed = 2.02 * spacing if kernel.covered else 13 * spacing
+    if not kernel.reach >= needed:
+        raise InputError("add_walls", "reach", kernel.reach, f"must be at least {needed:.4g} m")
+    sums = [_wall_sums(kernel, faces, spacing) for faces in range(3)]
+    x = kernel.grid[: int(np.searchsorted(kernel.grid, spacing)) + 2]
+    first, second, third = (
+        _even_spline(x, spline(x) + apart(x)) for spline, (apart, _) in zip(kernel.rest, sums, strict=True)
+    )
+    low, mixed, high = (across for _, across in sums)
+    return replace(kernel, grid=x, rest=(first, second, third), mirrored=(low, mixed, high))
+
+
+def _even_spline(x: Floats, y: Floats) -> CubicSpline:
+    """Spline of an even function given from zero upward."""
+    return CubicSpline(x, y, bc_type=("clamped", "not-a-knot"))
 
 
 def _grid(height: float, scale: float, reach: float) -> Floats:
     """Points from 0, even near the charge and spreading far from it."""
-    near = 6 * height
     step = scale / _PER_HEIGHT
-    if reach <= near:
-        return np.arange(0, reach + 2 * step, step)
-    steps = [*np.arange(0, near, step)]
-    position, growth = near, step
-    while position < reach + growth:
-        steps.append(position)
+    near = min(6 * height, reach)
+    count = int(np.ceil(near / step)) + 2
+    points = [*(step * np.arange(count))]
+    growth = step
+    while points[-1] < reach + growth:
         growth = min(growth * 1.04, height)
-        position += growth
-    steps.append(position)
-    return np.asarray(steps)
+        points.append(points[-1] + growth)
+    return np.asarray(points)
 
 
 def _slab_images(x: Floats, s: float, height: float, image: float) -> Floats:
@@ -140,15 +173,13 @@ def _slab_images(x: Floats, s: float, height: float, image: float) -> Floats:
     count = 1 if image == 0 else max(2, int(np.ceil(np.log(_IMAGE_TOLERANCE) / np.log(image))))
     n = np.arange(1, count + 1)
     strength = (1 - image**2) * (-image) ** (n - 1)
-    depth = s + 2 * n * height
-    result: Floats = log_twice(x[:, None], depth[None, :]) @ strength
+    depth = np.asarray(s + 2 * n * height, dtype=np.float64)
+    result = np.asarray(log_twice(x[:, None], depth[None, :]) @ strength, dtype=np.float64)
     # a constant and the reference of the antiderivative drop out of every second difference
-    return result - result[0]
+    return np.asarray(result - result[0])
 
 
-def _cover_part(
-    x: Floats, s: float, d: float, height: float, image: float, cover: float
-) -> Floats:
+def _cover_part(x: Floats, s: float, d: float, height: float, image: float, cover: float) -> Floats:
     """Second antiderivative of what a cover adds, by quadrature over the wave number."""
     top = 36.0 / (2 * cover - s)
     panels = max(8, int(np.ceil(top * x[-1] / 20)))
@@ -169,28 +200,30 @@ def _cover_part(
     return result
 
 
-def _wall_sums(
-    rest: Floats, x: Floats, s: float, d: float, image: float, spacing: float
-) -> tuple[CubicSpline, CubicSpline]:
+def _wall_sums(kernel: KernelTable, faces: int, spacing: float) -> tuple[CubicSpline, CubicSpline]:
     """Second antiderivatives of the periodic images of two side walls.
 
-    The first, of ``x - x'``, sums the copies at ``2 m A``, m not 0; the second, of ``x + x'``, all reflections.
+    The first, of ``x - x'``, sums the copies at ``2 m A``, m not 0; the second, of ``x + x'``, all
+    reflections.
     """
-    potential = CubicSpline(x, rest, bc_type=((1, 0.0), "not-a-knot")).derivative(2)
-    reach = x[-1]
+    s, d = kernel.heights[faces]
+    spline, reach, image = kernel.rest[faces], kernel.reach, kernel.image
     copies = int(reach // (2 * spacing)) - 1
 
     def green(z: Floats) -> Floats:
         z = np.abs(z)
-        near = -np.log(np.hypot(z, d)) + image * np.log(np.hypot(z, s)) if image else -np.log(np.hypot(z, d))
-        total: Floats = near + potential(np.minimum(z, reach))
-        return total
+        total = spline(np.minimum(z, reach), 2) - np.log(np.hypot(z, d))
+        if image:
+            total += image * np.log(np.hypot(z, s))
+        return np.asarray(np.where(z > reach, 0.0, total))
 
-    apart = np.linspace(0, spacing, 161)
-    sums = sum((green(apart + 2 * m * spacing) + green(apart - 2 * m * spacing) for m in range(1, copies + 1)),
-               np.zeros_like(apart))
+    apart = np.linspace(0, 1.05 * spacing, 161)
+    sums = np.zeros_like(apart)
+    for m in range(1, max(copies, 1) + 1):
+        sums += green(apart + 2 * m * spacing) + green(apart - 2 * m * spacing)
     margin = spacing * 0.02
     across = np.linspace(margin, 2 * spacing - margin, 321)
-    mirror = sum((green(across + 2 * m * spacing) for m in range(-copies - 1, copies + 1)), np.zeros_like(across))
-    even = CubicSpline(apart, sums, bc_type=((1, 0.0), "not-a-knot")).antiderivative(2)
-    return even, CubicSpline(across, mirror).antiderivative(2)
+    mirror = np.zeros_like(across)
+    for m in range(-copies - 1, copies + 1):
+        mirror += green(across + 2 * m * spacing)
+    return _even_spline(apart, sums).antiderivative(2), CubicSpline(across, mirror).antiderivative(2)

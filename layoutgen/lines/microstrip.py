@@ -1,9 +1,9 @@
 """Closed forms of single and coupled microstrip lines, for first guesses and for isolated lines.
 
-The coupled pair follows Hammerstad and Jensen 1980 rather than Kirschning and Jansen 1984: over the shapes a comb
-uses, the static part of the former stays within 0.8 % of converged solutions, that of the latter within 1.2 %
-(the tests hold the tables). Neither is used in the reported prediction of coupled lines, which rests on
-`layoutgen.lines.quasistatic`.
+The coupled pair follows Hammerstad and Jensen 1980 rather than Kirschning and Jansen 1984: over the
+shapes a comb uses, the static part of the former stays within 0.8 % of converged solutions, that of the
+latter within 1.2 % (the tests hold the tables). Neither is used in the reported prediction of coupled
+lines, which rests on `layoutgen.lines.quasistatic`.
 """
 
 from __future__ import annotations
@@ -63,7 +63,8 @@ def air_impedance(width_over_height: ArrayLike) -> Floats:
     Returns
     -------
     ndarray
-        Impedance, within 0.03 % of the exact mapping up to 1000 and 0.01 % up to 1, as the authors state. [ohm]
+        Impedance, within 0.03 % of the exact mapping up to 1000 and 0.01 % up to 1, as the authors
+        state. [ohm]
 
     Raises
     ------
@@ -114,9 +115,7 @@ def effective_permittivity(*, width: ArrayLike, height: ArrayLike, eps_r: ArrayL
     return result
 
 
-def single_line(
-    *, width: ArrayLike, height: ArrayLike, eps_r: ArrayLike, thickness: ArrayLike = 0.0
-) -> Line:
+def single_line(*, width: ArrayLike, height: ArrayLike, eps_r: ArrayLike, thickness: ArrayLike = 0.0) -> Line:
     """Static impedance and effective permittivity of an open microstrip line of a strip of finite thickness.
 
     Parameters
@@ -129,8 +128,8 @@ def single_line(
     Returns
     -------
     Line
-        Within 0.2 % in impedance and 0.6 % in permittivity of converged solutions for thickness up to 0.1 of the
-        height.
+        Within 0.2 % in impedance and 0.6 % in permittivity of converged solutions for thickness up to
+        0.1 of the height.
 
     References
     ----------
@@ -144,9 +143,7 @@ def single_line(
     return Line(impedance=z_slab / np.sqrt(eps), eps_eff=eps * (z_air / z_slab) ** 2)
 
 
-def width_for_impedance(
-    impedance: float, *, height: float, eps_r: float, thickness: float = 0.0
-) -> float:
+def width_for_impedance(impedance: float, *, height: float, eps_r: float, thickness: float = 0.0) -> float:
     """Width of an open microstrip line of a wanted impedance, by inverting `single_line`. [m]
 
     Raises
@@ -160,8 +157,9 @@ def width_for_impedance(
         return float(line.impedance) - impedance
 
     low, high = np.log(0.05 * height), np.log(20 * height)
-    require_inside("width_for_impedance", "impedance", impedance,
-                   impedance + excess(high), impedance + excess(low))
+    require_inside(
+        "width_for_impedance", "impedance", impedance, impedance + excess(high), impedance + excess(low)
+    )
     return float(np.exp(brentq(excess, low, high, xtol=1e-10)))
 
 
@@ -187,8 +185,8 @@ def coupled_pair(*, width: ArrayLike, gap: ArrayLike, height: ArrayLike, eps_r: 
 
     Notes
     -----
-    One term of the odd-mode permittivity is hard to read in print; the reading used here is the one that stays
-    within 0.4 % of converged solutions.
+    One term of the odd-mode permittivity is hard to read in print; the reading used here is the one that
+    stays within 0.4 % of converged solutions.
 
     References
     ----------
@@ -244,16 +242,10 @@ def _coupled_phases(u: Floats, g: Floats) -> tuple[Floats, Floats]:
     alpha = 0.5 * np.exp(-g)
     psi = 1 + g / 1.45 + g**2.09 / 3.95
     phi = 0.8645 * u**0.172
-    m = (
-        0.2175
-        + (4.113 + (20.36 / g) ** 6) ** -0.251
-        + np.log(g**10 / (1 + (g / 13.8) ** 10)) / 323
-    )
+    m = 0.2175 + (4.113 + (20.36 / g) ** 6) ** -0.251 + np.log(g**10 / (1 + (g / 13.8) ** 10)) / 323
     even = phi / (psi * (alpha * u**m + (1 - alpha) * u**-m))
     theta = 1.729 + 1.175 * np.log(1 + 0.627 / (g + 0.327 * g**2.17))
-    beta = (
-        0.2306 + np.log(g**10 / (1 + (g / 3.73) ** 10)) / 301.8 + np.log(1 + 0.646 * g**1.175) / 5.3
-    )
+    beta = 0.2306 + np.log(g**10 / (1 + (g / 3.73) ** 10)) / 301.8 + np.log(1 + 0.646 * g**1.175) / 5.3
     n = (1 / 17.7 + np.exp(-6.424 - 0.76 * np.log(g) - (g / 0.23) ** 5)) * np.log(
         (10 + 68.3 * g**2) / (1 + 32.5 * g**3.093)
     )

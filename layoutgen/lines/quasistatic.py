@@ -1,8 +1,9 @@
 """Capacitance and inductance matrices of any set of strips on a slab, with every coupling.
 
-The charge on the faces of each strip is taken constant on panels that shrink towards the corners and the potential
-is tested on the same panels (Galerkin), with every singular integral in closed form. The matrix of potential
-coefficients of a set of strips contains that of each subset, so resonators that end early cost one more solution only.
+The charge on the faces of each strip is taken constant on panels that shrink towards the corners and the
+potential is tested on the same panels (Galerkin), with every singular integral in closed form. The
+matrix of potential coefficients of a set of strips contains that of each subset, so resonators that end
+early cost one more solution only.
 
 Reference: R. F. Harrington, "Field Computation by Moment Methods", Macmillan, 1968, ch. 2.
 """
@@ -18,7 +19,7 @@ from scipy.linalg import cho_factor, cho_solve
 
 from layoutgen.constants import VACUUM_PERMITTIVITY
 from layoutgen.errors import InputError
-from layoutgen.lines.kernel import KernelTable, build_kernel, log_twice
+from layoutgen.lines.kernel import KernelTable, add_walls, build_kernel, log_twice
 
 __all__ = ["Mesh", "StripSystem", "solve_strips"]
 
@@ -89,21 +90,21 @@ def solve_strips(
 
     Notes
     -----
-    Against converged solutions the self terms of single strips and pairs are within 0.1 %, the couplings of
-    arrays within 1 % (the tests hold the tables), for thickness up to 0.1 of the height and gaps down to 0.05 of it.
+    Against converged solutions the self terms of single strips and pairs are within 0.1 %, the couplings
+    of arrays within 1 % (the tests hold the tables), for thickness up to 0.1 of the height and gaps down
+    to 0.05 of it.
     """
-    reach = _reach(np.asarray(centres, dtype=float), np.asarray(widths, dtype=float), height, walls)
-    kernel = build_kernel(height=height, eps_r=eps_r, thickness=thickness, cover=cover,
-                          wall_spacing=None if walls is None else walls[1] - walls[0], reach=reach)
-    system = StripSystem(centres=centres, widths=widths, thickness=thickness, walls=walls, mesh=mesh or Mesh())
-    return system.capacitance(kernel)
-
-
-def _reach(
-    centres: Floats, widths: Floats, height: float, walls: tuple[float, float] | None
-) -> float:
-    extent = float(np.max(centres + widths / 2) - np.min(centres - widths / 2))
-    return extent if walls is None else max(extent, 13 * (walls[1] - walls[0]))
+    system = StripSystem(
+        centres=centres, widths=widths, thickness=thickness, walls=walls, mesh=mesh or Mesh()
+    )
+    if not (height > 0 and eps_r >= 1 and thickness >= 0 and (cover is None or cover > thickness)):
+        got = f"height {height}, eps_r {eps_r}, thickness {thickness}, cover {cover}"
+        raise InputError("solve_strips", "stack-up", got, "must be a slab of positive height under any cover")
+    x, w = np.asarray(centres, dtype=float), np.asarray(widths, dtype=float)
+    spacing = 0.0 if walls is None else walls[1] - walls[0]
+    reach = max(float(np.max(x + w / 2) - np.min(x - w / 2)), (2.1 if cover else 13.1) * spacing)
+    kernel = build_kernel(height=height, eps_r=eps_r, thickness=thickness, cover=cover, reach=reach)
+    return system.capacitance(kernel if walls is None else add_walls(kernel, spacing))
 
 
 class StripSystem:
@@ -164,9 +165,13 @@ def _check(centre: Floats, width: Floats, walls: tuple[float, float] | None) -> 
     if not bool(np.all(gaps > 0)):
         raise InputError("solve_strips", "centres", centre.tolist(), "strips overlap or are out of order")
     if walls is not None:
-        clear = min(float(np.min(centre - width / 2)) - walls[0], walls[1] - float(np.max(centre + width / 2)))
+        clear = min(
+            float(np.min(centre - width / 2)) - walls[0], walls[1] - float(np.max(centre + width / 2))
+        )
         if not clear > 0.02 * (walls[1] - walls[0]):
-            raise InputError("solve_strips", "walls", walls, "a strip touches a side wall or is too near to it")
+            raise InputError(
+                "solve_strips", "walls", walls, "a strip touches a side wall or is too near to it"
+            )
 
 
 def _graded(count: int, grading: float) -> Floats:
@@ -204,7 +209,7 @@ class _Panels:
         self._side_lengths, self._flat_lengths = side, flat
 
     def logarithms(self) -> tuple[Floats, Floats]:
-        """Integrals of ``-ln r`` to the charge, and of ``+ln r`` to its image in the upper face of the slab."""
+        """Integrals of ``-ln r`` to the charge, and of ``+ln r`` to its image in the slab's face."""
         t = self._thickness
         if t == 0:
             own = _flat_differences(log_twice(self._apart, 0.0), self._nodes.shape)
@@ -221,8 +226,11 @@ class _Panels:
 
     def smooth(self, kernel: KernelTable) -> Floats:
         """Integrals of the smooth rest of the kernel."""
-        low, mixed, high = (self._flat_smooth(kernel, i) for i in range(3)) if self._thickness else (
-            self._flat_smooth(kernel, 0), None, None)
+        low, mixed, high = (
+            (self._flat_smooth(kernel, i) for i in range(3))
+            if self._thickness
+            else (self._flat_smooth(kernel, 0), None, None)
+        )
         if mixed is None or high is None:
             return low
         middle = ((self._nodes[:, 1:] + self._nodes[:, :-1]) / 2).ravel()
@@ -231,14 +239,17 @@ class _Panels:
         sides, up = len(self._walls), len(rise)
         against = []
         for face in (0, 1):
-            mixture = ((1 - rise)[None, :, None] * flat[face][:, None, :]
-                       + rise[None, :, None] * flat[face + 1][:, None, :])
+            mixture = (1 - rise)[None, :, None] * flat[face][:, None, :] + rise[None, :, None] * flat[
+                face + 1
+            ][:, None, :]
             against.append(mixture.reshape(sides * up, -1) * np.outer(self._side_lengths, self._flat_lengths))
         walls = self._potentials(kernel, self._walls[:, None], self._walls[None, :])
         a, b = rise[:, None], rise[None, :]
         weights = ((1 - a) * (1 - b), a * (1 - b) + (1 - a) * b, a * b)
-        side = sum((np.kron(value, weight) for value, weight in zip(walls, weights, strict=True)),
-                   np.zeros((sides * up, sides * up)))
+        side = sum(
+            (np.kron(value, weight) for value, weight in zip(walls, weights, strict=True)),
+            np.zeros((sides * up, sides * up)),
+        )
         side *= np.outer(self._side_lengths, self._side_lengths)
         lower, upper = against
         return np.block([[low, mixed, lower.T], [mixed.T, high, upper.T], [lower, upper, side]])

@@ -6,17 +6,18 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 from scipy.linalg import eigh
 
 from layoutgen.constants import SPEED_OF_LIGHT, VACUUM_PERMEABILITY
 from layoutgen.errors import InputError
-from layoutgen.lines.kernel import KernelTable, build_kernel
+from layoutgen.lines.kernel import KernelTable, add_walls, build_kernel
 from layoutgen.lines.quasistatic import Mesh, StripSystem
 
-__all__ = ["LineSolver", "LossMatrices", "Modes", "StripMatrices"]
+__all__ = ["LineSolver", "LossMatrices", "Modes", "StripMatrices", "line_admittance"]
 
 Floats = NDArray[np.float64]
+Complexes = NDArray[np.complex128]
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -59,6 +60,47 @@ class Modes:
     current: Floats
 
 
+def line_admittance(
+    frequency: ArrayLike,
+    modes: Modes,
+    length: float,
+    *,
+    resistance: ArrayLike = 0.0,
+    conductance: ArrayLike = 0.0,
+) -> tuple[Complexes, Complexes]:
+    """Admittance matrix of a piece of coupled line, as two blocks.
+
+    Parameters
+    ----------
+    frequency : array_like, shape (n_freq,)
+        Greater than 0. [Hz]
+    modes : Modes
+        Of n strips.
+    length : float
+        Of the piece, greater than 0. [m]
+    resistance, conductance : array_like, broadcast to shape (n_freq, n)
+        Of each mode, per unit length, in the modes' own normalisation. [ohm/m], [S/m]
+
+    Returns
+    -------
+    near, far : ndarray, shape (n_freq, n, n)
+        Currents into one end per voltage at that end, and per voltage at the other end. [S]
+
+    References
+    ----------
+    C. R. Paul, "Analysis of Multiconductor Transmission Lines", Wiley, 1994, ch. 4.
+    """
+    omega = 2 * np.pi * np.atleast_1d(np.asarray(frequency, dtype=float))[:, None]
+    series = 1j * omega + np.asarray(resistance)
+    shunt = 1j * omega * modes.slowness**2 + np.asarray(conductance)
+    exponent = np.sqrt(series * shunt) * length
+    admittance = np.sqrt(shunt / series)
+    current = modes.current
+    near = (current * (admittance / np.tanh(exponent))[:, None, :]) @ current.T
+    far = (current * (-admittance / np.sinh(exponent))[:, None, :]) @ current.T
+    return near, far
+
+
 @dataclass(frozen=True, kw_only=True)
 class LossMatrices:
     """What turns surface resistance and loss tangent into per-unit-length loss.
@@ -74,6 +116,10 @@ class LossMatrices:
     resistance: Floats
     capacitance_slope: Floats
 
+    def of_modes(self, modes: Modes) -> tuple[Floats, Floats]:
+        """Resistance over surface resistance, and capacitance slope, of each lossless mode."""
+        return _diagonal(modes.current, self.resistance), _diagonal(modes.voltage, self.capacitance_slope)
+
 
 class LineSolver:
     """Solves sections of strips on one stack-up; holds the kernel tables of that stack-up.
@@ -86,10 +132,8 @@ class LineSolver:
         Of the strips. [m]
     cover : float or None
         Height of a metal cover above the slab. [m]
-    walls : tuple of two floats or None
-        Positions of metal side walls. [m]
     reach : float
-        Greatest extent of a set of strips. [m]
+        Greatest extent of a set of strips, and of the space between side walls. [m]
     mesh : Mesh, optional
         Panels of each strip.
     """
@@ -101,53 +145,59 @@ class LineSolver:
         eps_r: float,
         thickness: float,
         cover: float | None,
-        walls: tuple[float, float] | None,
         reach: float,
         mesh: Mesh | None = None,
     ) -> None:
         if not reach > 0:
             raise InputError("LineSolver", "reach", reach, "must be greater than 0")
         self.height, self.eps_r, self.thickness = height, eps_r, thickness
-        self.cover, self.walls, self.reach = cover, walls, reach
+        self.cover, self.reach = cover, reach
         self._mesh = mesh or Mesh()
-        self._slab = self._kernel(eps_r, 0.0)
-        self._air = self._kernel(1.0, 0.0)
-
-    def _kernel(self, eps_r: float, recession: float) -> KernelTable:
-        reach = self.reach
-        spacing = None
-        if self.walls is not None:
-            spacing = self.walls[1] - self.walls[0] + 2 * recession
-            reach = max(reach, 13 * spacing)
-        return build_kernel(height=self.height + 2 * recession, eps_r=eps_r,
-                            thickness=self.thickness - 2 * recession, cover=self.cover,
-                            wall_spacing=spacing, reach=reach)
+        self._kernels: dict[tuple[float, float, bool], KernelTable] = {}
+        self._walled: dict[tuple[float, float, bool], tuple[float, KernelTable]] = {}
 
     def matrices(
-        self, centres: Floats, widths: Floats, subsets: Sequence[Sequence[int]]
+        self,
+        centres: ArrayLike,
+        widths: ArrayLike,
+        subsets: Sequence[Sequence[int]],
+        walls: tuple[float, float] | None = None,
     ) -> list[StripMatrices]:
         """Matrices of each subset of the strips, the others being taken away.
 
         Parameters
         ----------
-        centres, widths : ndarray, shape (n,)
+        centres, widths : array_like, shape (n,)
             Strips by rising centre. [m]
         subsets : sequence of sequences of int
             Strips present, by index.
+        walls : tuple of two floats or None
+            Positions of metal side walls. [m]
 
         Raises
         ------
         InputError
             If strips overlap or the set is wider than the tables reach.
         """
-        system = self._system(centres, widths, 0.0)
-        slab = system.capacitances(self._slab, subsets)
-        air = system.capacitances(self._air, subsets)
-        return [StripMatrices(capacitance=c, inductance=np.linalg.inv(a) / SPEED_OF_LIGHT**2)
-                for c, a in zip(slab, air, strict=True)]
+        strips = _Strips(np.asarray(centres, dtype=float), np.asarray(widths, dtype=float), walls)
+        system = self._system(strips)
+        slab = system.capacitances(self._kernel(self.eps_r, strips), subsets)
+        air = system.capacitances(self._kernel(1.0, strips), subsets)
+        return [
+            StripMatrices(
+                capacitance=c, inductance=np.asarray(np.linalg.inv(a) / SPEED_OF_LIGHT**2, dtype=np.float64)
+            )
+            for c, a in zip(slab, air, strict=True)
+        ]
 
-    def losses(self, centres: Floats, widths: Floats, subsets: Sequence[Sequence[int]]) -> list[LossMatrices]:
-        """Loss matrices of each subset of the strips.
+    def losses(
+        self,
+        centres: ArrayLike,
+        widths: ArrayLike,
+        subsets: Sequence[Sequence[int]],
+        walls: tuple[float, float] | None = None,
+    ) -> list[LossMatrices]:
+        """Loss matrices of each subset of the strips; parameters are those of `matrices`.
 
         The resistance is the derivative of the external inductance with respect to a recession of all metal
         walls into the metal, which holds while the skin depth is small against thickness and gaps.
@@ -156,27 +206,84 @@ class LineSolver:
         ----------
         H. A. Wheeler, "Formulas for the skin effect", Proc. IRE 30, 1942 (incremental inductance rule).
         """
-        step = 2e-3 * self.thickness
-        system = self._system(centres, widths, 0.0)
-        receded = self._system(centres, widths, step)
-        air_receded = self._kernel(1.0, step)
-        contrast = 1e-3 * self.eps_r
-        richer = self._kernel(self.eps_r + contrast, 0.0)
+        step, contrast = 2e-3 * self.thickness, 1e-3 * self.eps_r
+        strips = _Strips(np.asarray(centres, dtype=float), np.asarray(widths, dtype=float), walls)
+        smaller = strips.receded(step)
+        system, receded = self._system(strips), self._system(smaller, step)
         results = []
         for before, after, slab, rich in zip(
-            system.capacitances(self._air, subsets), receded.capacitances(air_receded, subsets),
-            system.capacitances(self._slab, subsets), system.capacitances(richer, subsets), strict=True,
+            system.capacitances(self._kernel(1.0, strips), subsets),
+            receded.capacitances(self._kernel(1.0, smaller, step), subsets),
+            system.capacitances(self._kernel(self.eps_r, strips), subsets),
+            system.capacitances(self._kernel(self.eps_r + contrast, strips), subsets),
+            strict=True,
         ):
             growth = (np.linalg.inv(after) - np.linalg.inv(before)) / SPEED_OF_LIGHT**2 / step
-            results.append(LossMatrices(resistance=growth / VACUUM_PERMEABILITY,
-                                        capacitance_slope=(rich - slab) * self.eps_r / contrast))
+            results.append(
+                LossMatrices(
+                    resistance=growth / VACUUM_PERMEABILITY,
+                    capacitance_slope=(rich - slab) * self.eps_r / contrast,
+                )
+            )
         return results
 
-    def _system(self, centres: Floats, widths: Floats, recession: float) -> StripSystem:
-        extent = float(np.max(centres + widths / 2) - np.min(centres - widths / 2))
-        if not extent <= self.reach:
-            raise InputError("LineSolver", "centres", f"{extent:.4g} m wide",
-                             f"must not be wider than the tables, {self.reach:.4g} m")
-        walls = None if self.walls is None else (self.walls[0] - recession, self.walls[1] + recession)
-        return StripSystem(centres=centres, widths=widths - 2 * recession,
-                           thickness=self.thickness - 2 * recession, walls=walls, mesh=self._mesh)
+    def _kernel(self, eps_r: float, strips: _Strips, recession: float = 0.0) -> KernelTable:
+        """Table of the slab, or of another permittivity, with all metal receded by a little."""
+        key = (eps_r, recession, strips.walls is not None)
+        if key not in self._kernels:
+            around = 1.0 if strips.walls is None else 2.1 if self.cover is not None else 13.1
+            self._kernels[key] = build_kernel(
+                height=self.height + 2 * recession,
+                eps_r=eps_r,
+                thickness=self.thickness - 2 * recession,
+                cover=self.cover,
+                reach=around * (self.reach + 2 * recession),
+            )
+        if strips.walls is None:
+            return self._kernels[key]
+        spacing = strips.walls[1] - strips.walls[0]
+        if key not in self._walled or self._walled[key][0] != spacing:
+            self._walled[key] = spacing, add_walls(self._kernels[key], spacing)
+        return self._walled[key][1]
+
+    def _system(self, strips: _Strips, recession: float = 0.0) -> StripSystem:
+        if not strips.extent <= self.reach * (1 + 1e-9) + 2 * recession:
+            raise InputError(
+                "LineSolver",
+                "centres",
+                f"{strips.extent:.4g} m wide",
+                f"must not be wider than the tables, {self.reach:.4g} m",
+            )
+        return StripSystem(
+            centres=strips.centres,
+            widths=strips.widths,
+            thickness=self.thickness - 2 * recession,
+            walls=strips.walls,
+            mesh=self._mesh,
+        )
+
+
+@dataclass(frozen=True)
+class _Strips:
+    """Centres, widths and side walls of a set of strips. [m]"""
+
+    centres: Floats
+    widths: Floats
+    walls: tuple[float, float] | None
+
+    @property
+    def extent(self) -> float:
+        """Of the strips, or of the space between the walls."""
+        if self.walls is not None:
+            return self.walls[1] - self.walls[0]
+        return float(np.max(self.centres + self.widths / 2) - np.min(self.centres - self.widths / 2))
+
+    def receded(self, step: float) -> _Strips:
+        """All metal walls moved into the metal."""
+        walls = None if self.walls is None else (self.walls[0] - step, self.walls[1] + step)
+        return _Strips(self.centres, self.widths - 2 * step, walls)
+
+
+def _diagonal(basis: Floats, matrix: Floats) -> Floats:
+    result: Floats = np.einsum("im,ij,jm->m", basis, matrix, basis)
+    return result

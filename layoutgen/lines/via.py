@@ -1,21 +1,24 @@
 """Vias to the ground plane at the end of a strip: self and mutual inductance, resistance.
 
-A via carries its current down at the end of a strip whose own inductance is counted, per unit length, as if the
-strip went on for ever. What the end adds is the partial inductance of the via over its image in the ground plane,
-less what the strip's missing half would have contributed. Both integrals are Neumann's, in closed form:
+A via carries its current down at the end of a strip whose own inductance is counted, per unit length, as
+if the strip went on for ever. What the end adds is the partial inductance of the via over its image in
+the ground plane, less what the strip's missing half would have contributed. Both integrals are
+Neumann's, in closed form:
 
     vertical    (mu0/4 pi) [2h asinh(2h/d) - sqrt(4h^2 + d^2) + d]
     strip end   (mu0/4 pi) [sqrt(4h^2 + e^2) - e]
 
-with d the distance between two vias (the radius for one and the same), e that between two strips' centre lines
-(for one and the same strip the geometric mean distance of a tape, 0.2235 of its width). Between distant
-resonators the two nearly cancel: the end effect falls with the cube of the distance, not with the distance.
+with d the distance between two vias (the radius for one and the same), e that between two strips' centre
+lines (for one and the same strip the geometric mean distance of a tape, 0.2235 of its width). Between
+distant resonators the two nearly cancel: the end effect falls with the cube of the distance, not with
+the distance.
 
 References
 ----------
-F. W. Grover, "Inductance Calculations", Van Nostrand, 1946, ch. 2 and 3 (filaments, geometric mean distances).
-M. E. Goldfarb, R. A. Pucel, "Modeling via hole grounds in microstrip", IEEE Microwave and Guided Wave Letters 1,
-1991, pp. 135-137 (an empirical fit for one via, which the model is compared with).
+F. W. Grover, "Inductance Calculations", Van Nostrand, 1946, ch. 2 and 3 (filaments, geometric mean
+distances). M. E. Goldfarb, R. A. Pucel, "Modeling via hole grounds in microstrip", IEEE Microwave and
+Guided Wave Letters 1, 1991, pp. 135-137 (an empirical fit for one via, which the model is compared
+with).
 """
 
 from __future__ import annotations
@@ -28,7 +31,7 @@ from numpy.typing import ArrayLike, NDArray
 from layoutgen.constants import VACUUM_PERMEABILITY
 from layoutgen.errors import InputError, require_inside
 
-__all__ = ["grounded_ends_inductance", "goldfarb_pucel_inductance", "via_resistance"]
+__all__ = ["goldfarb_pucel_inductance", "grounded_ends_inductance", "via_resistance"]
 
 Floats = NDArray[np.float64]
 
@@ -69,7 +72,8 @@ def grounded_ends_inductance(
 
     Notes
     -----
-    One via under a strip as narrow as itself agrees with the fit of Goldfarb and Pucel within 12 % over its range.
+    One via under a strip as narrow as itself agrees with the fit of Goldfarb and Pucel within 12 % over
+    its range.
     """
     where = "grounded_ends_inductance"
     x = np.concatenate([np.asarray(group, dtype=float) for group in positions])
@@ -94,9 +98,7 @@ def grounded_ends_inductance(
 
 def _vertical(distance: Floats, height: float) -> Floats:
     d, span = distance, 2 * height
-    result: Floats = VACUUM_PERMEABILITY / (4 * np.pi) * (
-        span * np.arcsinh(span / d) - np.hypot(span, d) + d
-    )
+    result: Floats = VACUUM_PERMEABILITY / (4 * np.pi) * (span * np.arcsinh(span / d) - np.hypot(span, d) + d)
     return result
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -11,7 +12,7 @@ from scipy.optimize import brentq
 
 from layoutgen.circuit import Circuit, SectionSolver
 from layoutgen.errors import LayoutError
-from layoutgen.sizing.template import Dimensions, Template
+from layoutgen.sizing.template import Dimensions, Plate, Template
 from layoutgen.synthesis import Couplings
 
 __all__ = ["GuessError", "PairCurve", "first_guess", "pair_curve", "resonant_length", "single_resonator"]
@@ -89,9 +90,13 @@ class PairCurve:
         """
         if not self.k[-1] <= k <= self.k[0]:
             figure, bound = (k, float(self.k[0])) if k > self.k[0] else (k, float(self.k[-1]))
-            raise GuessError("gap", figure, bound,
-                             f"coupling {k:.4f} is needed; gaps of {self.gaps[0] * 1e3:.3f} to "
-                             f"{self.gaps[-1] * 1e3:.2f} mm give {self.k[0]:.4f} to {self.k[-1]:.4f}")
+            raise GuessError(
+                "gap",
+                figure,
+                bound,
+                f"coupling {k:.4f} is needed; gaps of {self.gaps[0] * 1e3:.3f} to "
+                f"{self.gaps[-1] * 1e3:.2f} mm give {self.k[0]:.4f} to {self.k[-1]:.4f}",
+            )
         order = np.argsort(self.k)
         curve = PchipInterpolator(np.log(self.k[order]), self.gaps[order])
         return float(curve(np.log(k)))
@@ -114,11 +119,15 @@ def resonant_length(template: Template, solver: SectionSolver, frequency: float)
         return float(circuit.input_admittance([frequency], 0)[0].imag)
 
     if susceptance(shortest) > 0:
-        raise GuessError("length", shortest, 5 * choices.stack.height,
-                         f"a line of {shortest * 1e3:.2f} mm with this load already resonates below "
-                         f"{frequency / 1e9:.4g} GHz")
+        raise GuessError(
+            "length",
+            shortest,
+            5 * choices.stack.height,
+            f"a line of {shortest * 1e3:.2f} mm with this load already resonates below "
+            f"{frequency / 1e9:.4g} GHz",
+        )
     grid = np.linspace(shortest, longest, 24)
-    for low, high in zip(grid[:-1], grid[1:], strict=True):
+    for low, high in pairwise(grid):
         if susceptance(float(high)) > 0:
             return float(brentq(susceptance, low, high, xtol=1e-9))
     raise GuessError("length", longest, longest, "no length up to a quarter wavelength resonates")
@@ -131,9 +140,12 @@ def single_resonator(template: Template, solver: SectionSolver, frequency: float
     step = 1e-4
     low, high = circuit.input_admittance([frequency * (1 - step), frequency * (1 + step)], 0).imag
     modes, inductance = circuit.line_at_ground()
-    return SingleResonator(length=length, slope=float((high - low) / (4 * step)),
-                           phase_per_metre=2 * np.pi * frequency * float(modes.slowness[0]),
-                           short_length=inductance)
+    return SingleResonator(
+        length=length,
+        slope=float((high - low) / (4 * step)),
+        phase_per_metre=2 * np.pi * frequency * float(modes.slowness[0]),
+        short_length=inductance,
+    )
 
 
 def pair_curve(
@@ -142,7 +154,9 @@ def pair_curve(
     """Coupling of two equal resonators for gaps from the least allowed one to eighteen slab heights."""
     pair = template.with_order(2)
     stack = template.choices.stack
-    widest = 18 * stack.height if stack.cover is None else min(18 * stack.height, 6 * (stack.height + stack.cover))
+    widest = (
+        18 * stack.height if stack.cover is None else min(18 * stack.height, 6 * (stack.height + stack.cover))
+    )
     gaps = np.geomspace(least_gap, max(widest, 4 * least_gap), 10)
     k = []
     for gap in gaps:
@@ -179,8 +193,12 @@ def _tap(template: Template, resonator: SingleResonator, external_q: float) -> f
     reach = ratio * full
     highest = np.sin(resonator.phase_per_metre * (0.9 * resonator.length + resonator.short_length))
     if not reach <= highest:
-        raise GuessError("tap", float(reach / full), 0.9,
-                         f"external Q {external_q:.3g} would need a tap beyond 0.9 of the line")
+        raise GuessError(
+            "tap",
+            float(reach / full),
+            0.9,
+            f"external Q {external_q:.3g} would need a tap beyond 0.9 of the line",
+        )
     tap = float(np.arcsin(reach) / resonator.phase_per_metre - resonator.short_length)
     lowest = choices.overhang + choices.feed_width / 2
     return max(tap, 0.5 * lowest)
@@ -198,5 +216,5 @@ def _alone(template: Template, solver: SectionSolver, length: float) -> Circuit:
 def _shortest(template: Template) -> float:
     choices = template.choices
     load = choices.load
-    fixed = getattr(load, "length", None) or getattr(load, "land_length", 0.0)
-    return float(max(choices.overhang + fixed + choices.stack.height, 2.5 * choices.stack.height))
+    fixed = load.length if isinstance(load, Plate) else load.land_length
+    return max(choices.overhang + fixed + choices.stack.height, 2.5 * choices.stack.height)

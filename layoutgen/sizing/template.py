@@ -1,4 +1,4 @@
-"""A comb with fixed choices and free dimensions: from a vector of dimensions to a `Comb`, on the grid or off it."""
+"""A comb with fixed choices and free dimensions: from a vector of dimensions to a `Comb`."""
 
 from __future__ import annotations
 
@@ -118,9 +118,11 @@ class Template:
     def snapped(self, dimensions: Dimensions) -> Dimensions:
         """The same on the grid."""
         grid = self.choices.grid
-        return Dimensions(gaps=tuple(snap(g, grid) for g in dimensions.gaps),
-                          lengths=tuple(snap(v, grid) for v in dimensions.lengths),
-                          tap=snap(dimensions.tap, grid))
+        return Dimensions(
+            gaps=tuple(snap(g, grid) for g in dimensions.gaps),
+            lengths=tuple(snap(v, grid) for v in dimensions.lengths),
+            tap=snap(dimensions.tap, grid),
+        )
 
     def comb(self, dimensions: Dimensions) -> Comb:
         """The comb of these dimensions, centred on a board that leaves the clearances and the margin."""
@@ -135,11 +137,18 @@ class Template:
         width = x[-1] + choices.widest / 2 + border
         short_line = border + choices.overhang
         height = short_line + max(lengths) + self._beyond_end() + border
-        first, last = (self._feed(i, side, dimensions.tap) for i, side in
-                       ((0, "left"), (choices.order - 1, "right")))
+        first, last = (
+            self._feed(i, side, dimensions.tap) for i, side in ((0, "left"), (choices.order - 1, "right"))
+        )
         return Comb(
-            stack=choices.stack, resonators=resonators, feeds=(first, last), width=width, height=height,
-            short_line=short_line, ground_clearance=choices.clearance, feed_clearance=choices.feed_clearance,
+            stack=choices.stack,
+            resonators=resonators,
+            feeds=(first, last),
+            width=width,
+            height=height,
+            short_line=short_line,
+            ground_clearance=choices.clearance,
+            feed_clearance=choices.feed_clearance,
             side_walls=None if choices.stack.cover is None else (0.0, width),
         )
 
@@ -158,13 +167,24 @@ class Template:
         segments.append(Segment(length=line, width=choices.line_width))
         if plate:
             segments.append(Segment(length=plate.length, width=plate.width))
-        return Resonator(x=x, segments=tuple(segments), short=choices.short, overhang=choices.overhang,
-                         load=None if isinstance(choices.load, Plate) else choices.load)
+        return Resonator(
+            x=x,
+            segments=tuple(segments),
+            short=choices.short,
+            overhang=choices.overhang,
+            load=None if isinstance(choices.load, Plate) else choices.load,
+        )
 
     def _feed(self, resonator: int, side: str, tap: float) -> Feed:
         choices = self.choices
-        return Feed(resonator=resonator, side="left" if side == "left" else "right", tap=tap,
-                    width=choices.feed_width, impedance=choices.impedance, launch=choices.launch)
+        return Feed(
+            resonator=resonator,
+            side="left" if side == "left" else "right",
+            tap=tap,
+            width=choices.feed_width,
+            impedance=choices.impedance,
+            launch=choices.launch,
+        )
 
     def with_order(self, order: int) -> Template:
         """The same choices for another number of resonators."""

@@ -4,7 +4,17 @@ from __future__ import annotations
 
 from layoutgen.spec.keys import SPEC
 from layoutgen.spec.reader import load_spec
-from layoutgen.spec.requirement import Board, Construction, Load, Part, Passband, Short, Spec, Stopband
+from layoutgen.spec.requirement import (
+    Board,
+    Construction,
+    Load,
+    Margin,
+    Part,
+    Passband,
+    Short,
+    Spec,
+    Stopband,
+)
 from layoutgen.spec.starter import starter_text
 
 __all__ = [
@@ -12,6 +22,7 @@ __all__ = [
     "Board",
     "Construction",
     "Load",
+    "Margin",
     "Part",
     "Passband",
     "Short",

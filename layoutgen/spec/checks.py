@@ -94,6 +94,17 @@ def _check_ripple(source: Source, band: Values) -> None:
         band["return_loss"] = -10 * math.log10(-math.expm1(-ripple * math.log(10) / 10))
 
 
+def check_margin(source: Source, margin: Values, band: Values) -> None:
+    """No deeper return loss for a flat response, and a widened band that still has a lower edge."""
+    if band.get("shape") == "butterworth" and margin.get("return_loss"):
+        source.fault("margin.return_loss", "does not belong to a Butterworth response; remove it",
+                     blame=("passband.shape",))
+    lower, widening = band.get("lower"), margin.get("bandwidth")
+    if lower is not None and widening is not None and widening > lower / 2:
+        source.fault("margin.bandwidth", f"is more than half of passband.lower, {show(lower, 'frequency')}",
+                     blame=("passband.lower",))
+
+
 def check_stopbands(source: Source, stopbands: list[Values], band: Values) -> None:
     """Ends in order, and clear of the pass band."""
     edges = ("passband.lower", "passband.upper")

@@ -92,7 +92,7 @@ PASSBAND = Table(
         ),
         Key(
             name="insertion_loss",
-            about="greatest allowed at the centre of the band",
+            about="greatest allowed anywhere in the band; for Butterworth, at its centre",
             kind="level",
             above="0 dB",
             high="40 dB",
@@ -392,8 +392,31 @@ BOARD = Table(
     ),
 )
 
+MARGIN = Table(
+    name="margin",
+    about="how much better than required the comb is sized, for loss and tolerances to use up",
+    keys=(
+        Key(
+            name="return_loss",
+            about="deeper than passband.return_loss, Chebyshev only",
+            kind="level",
+            low="0 dB",
+            high="20 dB",
+            default="0 dB",
+        ),
+        Key(
+            name="bandwidth",
+            about="wider than the pass band, half of it at each edge",
+            kind="frequency",
+            low="0 Hz",
+            high="2 GHz",
+            default="0 MHz",
+        ),
+    ),
+)
+
 SPEC = Table(
     name="",
     about="a filter specification",
-    tables=(PART, PASSBAND, STOPBAND, CONSTRUCTION, LOAD, SHORT, BOARD),
+    tables=(PART, PASSBAND, STOPBAND, MARGIN, CONSTRUCTION, LOAD, SHORT, BOARD),
 )

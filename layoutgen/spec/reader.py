@@ -12,7 +12,17 @@ from layoutgen.library import SET, Change, Laminate, Library, Source, default_li
 from layoutgen.spec import checks
 from layoutgen.spec.keys import SPEC
 from layoutgen.spec.overrides import sort_overrides
-from layoutgen.spec.requirement import Board, Construction, Load, Part, Passband, Short, Spec, Stopband
+from layoutgen.spec.requirement import (
+    Board,
+    Construction,
+    Load,
+    Margin,
+    Part,
+    Passband,
+    Short,
+    Spec,
+    Stopband,
+)
 
 __all__ = ["load_spec"]
 
@@ -58,6 +68,7 @@ def load_spec(
     checks.check_part(source, values["part"], path)
     checks.check_passband(source, band, stopbands=source.count("stopband"))
     checks.check_stopbands(source, values["stopband"], band)
+    checks.check_margin(source, values["margin"], band)
     checks.check_construction(source, construction)
     checks.check_load(source, values["load"])
     checks.check_short(source, values["short"])
@@ -68,6 +79,7 @@ def load_spec(
         part=Part(**values["part"]),
         passband=Passband(**band),
         stopbands=tuple(Stopband(**stop) for stop in values["stopband"]),
+        margin=Margin(**values["margin"]),
         construction=Construction(**construction),
         load=Load(**values["load"]),
         short=Short(**values["short"]),

@@ -12,7 +12,7 @@ from layoutgen.errors import PhysicalRefusal
 from layoutgen.library import SET, Change, Checked, ChipCase, Copper, Laminate, Library, Shop, Thickness
 from layoutgen.spec import keys
 
-__all__ = ["Board", "Construction", "Load", "Part", "Passband", "Short", "Spec", "Stopband"]
+__all__ = ["Board", "Construction", "Load", "Margin", "Part", "Passband", "Short", "Spec", "Stopband"]
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -99,6 +99,25 @@ class Stopband(Checked):
     def __post_init__(self) -> None:
         self._require_keys(keys.STOPBAND.keys)
         self._require(self.upper > self.lower, "upper", "must be above the lower end")
+
+
+@dataclass(frozen=True, kw_only=True, slots=True)
+class Margin(Checked):
+    """How much better than required the comb is sized.
+
+    Attributes
+    ----------
+    return_loss : float
+        Deeper than required. [dB]
+    bandwidth : float
+        Wider than required, half of it at each edge. [Hz]
+    """
+
+    return_loss: float
+    bandwidth: float
+
+    def __post_init__(self) -> None:
+        self._require_keys(keys.MARGIN.keys)
 
 
 @dataclass(frozen=True, kw_only=True, slots=True)
@@ -276,7 +295,7 @@ class Spec:
     ----------
     path : Path
         The file.
-    part, passband, stopbands, construction, load, short, board
+    part, passband, stopbands, margin, construction, load, short, board
         Its tables.
     overrides : tuple of str
         ``"KEY=VALUE"`` as given for this run.
@@ -294,6 +313,7 @@ class Spec:
     part: Part
     passband: Passband
     stopbands: tuple[Stopband, ...]
+    margin: Margin
     construction: Construction
     load: Load
     short: Short

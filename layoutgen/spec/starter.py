@@ -19,7 +19,7 @@ upper = "2.05 GHz"
 shape = "chebyshev"          # or "butterworth": then neither return_loss nor ripple, edges at 3 dB
 return_loss = "20 dB"        # or ripple = "0.05 dB", not both
 order = "auto"               # or 2 to 9; "auto" takes the smallest that meets the stop bands
-# insertion_loss = "3 dB"    # a limit at the centre of the band, if there is one
+# insertion_loss = "5 dB"    # a limit anywhere in the band, if there is one
 impedance = "50 ohm"
 
 [[stopband]]                 # as many as needed, none of them inside the pass band
@@ -31,6 +31,10 @@ rejection = "25 dB"
 from = "2.35 GHz"
 to = "2.60 GHz"
 rejection = "30 dB"
+
+[margin]                     # sized this much better than required, for loss and tolerances to use up
+return_loss = "3 dB"
+bandwidth = "10 MHz"
 
 [construction]
 kind = "microstrip"

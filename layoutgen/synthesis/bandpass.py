@@ -2,9 +2,9 @@
 
 References
 ----------
-S. B. Cohn, "Direct-coupled-resonator filters", Proc. IRE 45, 1957.
-G. L. Matthaei, L. Young, E. M. T. Jones, "Microwave Filters, Impedance-Matching Networks, and Coupling Structures",
-McGraw-Hill, 1964, sec. 8.02.
+S. B. Cohn, "Direct-coupled-resonator filters", Proc. IRE 45, 1957. G. L. Matthaei, L. Young, E. M. T.
+Jones, "Microwave Filters, Impedance-Matching Networks, and Coupling Structures", McGraw-Hill, 1964, sec.
+8.02.
 """
 
 from __future__ import annotations
@@ -50,7 +50,9 @@ def couplings(g: ArrayLike, fractional_bandwidth: float) -> Couplings:
     """
     values = np.asarray(g, dtype=float)
     if not 0 < fractional_bandwidth < 1:
-        raise InputError("couplings", "fractional_bandwidth", fractional_bandwidth, "must lie between 0 and 1")
+        raise InputError(
+            "couplings", "fractional_bandwidth", fractional_bandwidth, "must lie between 0 and 1"
+        )
     inner = values[1:-1]
     k = fractional_bandwidth / np.sqrt(inner[:-1] * inner[1:])
     return Couplings(

@@ -1,7 +1,7 @@
 """Low-pass prototypes: element values, ripple and return loss, a first estimate of the order.
 
-Reference: G. L. Matthaei, L. Young, E. M. T. Jones, "Microwave Filters, Impedance-Matching Networks, and Coupling
-Structures", McGraw-Hill, 1964, ch. 4.
+Reference: G. L. Matthaei, L. Young, E. M. T. Jones, "Microwave Filters, Impedance-Matching Networks, and
+Coupling Structures", McGraw-Hill, 1964, ch. 4.
 """
 
 from __future__ import annotations

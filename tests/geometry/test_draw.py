@@ -196,6 +196,19 @@ def test_every_piece_of_top_copper_is_tied_to_the_plane_but_the_marks(comb):
     assert len(pieces) - len(loose) >= comb.order + chips + 1
 
 
+def test_ground_fill_that_no_via_reaches_is_not_drawn():
+    """A frame 0.25 to 0.4 mm wide, too narrow for a via pad of 0.6 mm."""
+    comb = chip_comb()
+    comb = widen(comb, width=comb.width - 1.2e-3, ground_clearance=11.2e-3,
+                 resonators=tuple(dataclasses.replace(r, x=r.x - 0.6e-3) for r in comb.resonators),
+                 feeds=tuple(dataclasses.replace(feed, launch=None) for feed in comb.feeds))
+
+    artwork = draw(comb, dataclasses.replace(STYLE, mounting_holes=0))
+
+    assert not artwork.of_kind("ground_fill")
+    assert {"reference mark 1", "reference mark 2", "reference mark 3"} <= set(artwork.left_out)
+
+
 @any_comb
 @given(comb=combs())
 def test_every_via_has_its_ring_of_copper(comb):
@@ -375,6 +388,20 @@ def test_a_usual_board_has_room_for_everything(comb):
     assert "CL-1690-5.a REV B" in {item.name for item in artwork.of_kind("legend")}
     assert len(artwork.of_kind("reference_mark")) == 3
     assert len(artwork.of_kind("mounting_hole")) == 4
+
+
+@pytest.mark.parametrize("clearance", [3.9e-3, 4.064e-3, 4.11e-3, 5.3e-3, 6.504e-3])
+def test_numbers_stand_on_the_laminate_kept_masked_for_them(clearance):
+    """Inside the clear area, so that no window in the ground fill is needed."""
+    comb = widen(chip_comb(), ground_clearance=clearance)
+    artwork = draw(comb, STYLE)
+
+    numbers = [item.shape.geometry for item in artwork.of_kind("legend") if item.name[0] in "RC"
+               and item.name[1:].isdigit()]
+    inner = shapely.union_all(shapes(artwork, "fence_via")).bounds
+
+    assert numbers
+    assert all(shapely.box(*inner).contains(ink) for ink in numbers)
 
 
 def test_a_long_part_number_is_set_in_lines():
