@@ -77,9 +77,9 @@ class Design:
         return self._circuit().scattering(frequency, NO_LOSSES)
 
     def ideal_response(self, frequency: ArrayLike) -> NDArray[np.complex128]:
-        """The lumped band-pass ladder of the prototype, as a reference; shapes as in `response`."""
-        band = self.spec.passband
-        return ladder_response(frequency, self.sizing.g, lower=band.lower, upper=band.upper)
+        """The lumped ladder that the comb was sized after, as a reference; shapes as in `response`."""
+        goal = self.sizing.goal
+        return ladder_response(frequency, self.sizing.g, lower=goal.lower, upper=goal.upper)
 
     @property
     def solver(self) -> SectionSolver:

@@ -183,7 +183,8 @@ def _rejection(
         remedy = "a shorter construction.electrical_length moves it up; or end the stop band below it"
     else:
         limit = f"the selectivity of order {circuit.comb.order}"
-        remedy = 'a higher passband.order (or "auto"), or a stop band further away'
+        higher = "" if circuit.comb.order >= 9 else 'a higher passband.order (or "auto"), or '
+        remedy = f"{higher}a stop band further away or a narrower pass band"
     return Judgement(
         requirement=f"rejection from {stopband.lower / 1e9:.4g} to {stopband.upper / 1e9:.4g} GHz, at least",
         key=f"stopband.{number}.rejection",

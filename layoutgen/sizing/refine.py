@@ -17,7 +17,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.polynomial import chebyshev
-from numpy.typing import NDArray
+from numpy.typing import ArrayLike, NDArray
 
 from layoutgen.circuit import NO_LOSSES, Circuit, SectionSolver
 from layoutgen.errors import InputError, LayoutError
@@ -139,9 +139,9 @@ def refine(template: Template, solver: SectionSolver, start: Dimensions, goal: G
     fitted = _least_squares(
         _Shape(evaluate, goal, order), np.concatenate([start.vector() / scale, np.zeros(_WARP)])
     )
-    vector = fitted[:-_WARP]
-    if goal.return_loss is not None:
-        vector = _equalise(_Ripples(evaluate, goal, order), vector)
+    # a Newton run that got stuck half-way, as happens to flat responses of high order, is worse than the fit
+    polished, left = _polish(_Shortfall(evaluate, goal, order), fitted[:-_WARP])
+    vector = polished if goal.return_loss is not None or left < 0.02 else fitted[:-_WARP]
     heights = np.abs(evaluate(vector, goal.inside(16 * order + 1))) / goal.level
     highest, edge = float(np.max(heights)), float(min(heights[0], heights[-1]))
     # at the band edges the function is steep: 0.015 n^2 of its level is 0.75 % of the bandwidth
@@ -215,7 +215,7 @@ class _Shape:
 
     def __init__(self, evaluate: Callable[[Floats, Floats], Floats], goal: Goal, order: int) -> None:
         self._evaluate, self._goal, self._order = evaluate, goal, order
-        self.enough = 0.05 if goal.return_loss is not None else 0.003
+        self.enough = 0.05
         self._sample = goal.inside(4 * order + 5)
         self._last: tuple[bytes, Floats] = (b"", np.empty(0))
 
@@ -280,29 +280,51 @@ def _least_squares(function: _Shape, vector: Floats, rounds: int = 25) -> Floats
     return vector
 
 
-class _Ripples:
-    """Heights of all ripples and of both band edges over the wanted level, on a logarithmic scale."""
+class _Shortfall:
+    """What a comb lacks of the goal: as many figures as unknowns, all of them zero when it is reached.
+
+    Equal ripple: the logarithms of the heights of all ripples and of both band edges over the wanted level.
+    Maximal
+    flatness: the Taylor coefficients, up to the order less two, about the point where the next one vanishes,
+    and the logarithms of the heights at both band edges.
+    """
 
     def __init__(self, evaluate: Callable[[Floats, Floats], Floats], goal: Goal, order: int) -> None:
         self._evaluate, self._order, self._level = evaluate, order, goal.level
+        self._flat = goal.return_loss is None
         self._nodes = goal.inside(4 * order + 9)
         centre, half = (goal.lower + goal.upper) / 2, (goal.upper - goal.lower) / 2
         self._basis = np.linalg.inv(chebyshev.chebvander((self._nodes - centre) / half, len(self._nodes) - 1))
 
     def __call__(self, vector: Floats) -> Floats | None:
-        """As many heights as unknowns; None when ripples have merged."""
+        """The figures; None when ripples have merged."""
         fitted = self._basis @ self._evaluate(vector, self._nodes)
-        series = chebyshev.chebtrim(fitted, 1e-7 * float(np.max(np.abs(fitted))))
-        turns = chebyshev.chebroots(chebyshev.chebder(series))
-        inner = np.sort(turns[(np.abs(turns.imag) < 1e-6) & (np.abs(turns.real) < 1)].real)
+        series = np.asarray(
+            chebyshev.chebtrim(fitted, 1e-7 * float(np.max(np.abs(fitted)))), dtype=np.float64
+        )
+        return self._flatness(series) if self._flat else self._ripples(series)
+
+    def _ripples(self, series: Floats) -> Floats | None:
+        inner = _roots(chebyshev.chebder(series))
         if len(inner) != self._order - 1:
             return None
-        places = np.concatenate([[-1.0], inner, [1.0]])
-        heights = np.log(np.abs(chebyshev.chebval(places, series)) / self._level)
-        return np.asarray(heights, dtype=np.float64)
+        heights = np.abs(chebyshev.chebval(np.concatenate([[-1.0], inner, [1.0]]), series))
+        return np.asarray(np.log(heights / self._level), dtype=np.float64)
+
+    def _flatness(self, series: Floats) -> Floats | None:
+        derivatives = [series]
+        for number in range(1, self._order):
+            derivatives.append(np.asarray(chebyshev.chebder(derivatives[-1]) / number, dtype=np.float64))
+        places = _roots(derivatives[-1])
+        if not len(places):
+            return None
+        place = places[int(np.argmin(np.abs(places)))]
+        flat = [chebyshev.chebval(place, derivative) for derivative in derivatives[:-1]]
+        edges = np.log(np.abs(chebyshev.chebval(np.array([-1.0, 1.0]), series)))
+        return np.concatenate([flat, edges])
 
     def jacobian(self, vector: Floats, value: Floats, step: float = 1e-4) -> Floats | None:
-        """Derivatives of the heights; None when ripples merge on the way."""
+        """Derivatives of the figures; None when ripples merge on the way."""
         columns = []
         for i in range(len(vector)):
             moved = vector.copy()
@@ -314,28 +336,35 @@ class _Ripples:
         return np.stack(columns, axis=1)
 
 
-def _equalise(ripples: _Ripples, vector: Floats, rounds: int = 12) -> Floats:
-    """Newton's method on the heights of all ripples, with shorter steps where a whole one does not help."""
-    value = ripples(vector)
+def _roots(series: ArrayLike) -> Floats:
+    """Real roots of a Chebyshev series between -1 and 1, rising."""
+    roots = chebyshev.chebroots(np.asarray(series))
+    inside = roots[(np.abs(roots.imag) < 1e-6) & (np.abs(roots.real) < 1)]
+    return np.asarray(np.sort(inside.real), dtype=np.float64)
+
+
+def _polish(shortfall: _Shortfall, vector: Floats, rounds: int = 12) -> tuple[Floats, float]:
+    """Newton's method with shorter steps where a whole one does not help; and what shortfall is left."""
+    value = shortfall(vector)
     jacobian: Floats | None = None
     for _ in range(rounds):
         if value is None or float(np.max(np.abs(value))) < 1e-3:
             break
         if jacobian is None:
-            jacobian = ripples.jacobian(vector, value)
+            jacobian = shortfall.jacobian(vector, value)
         if jacobian is None:
             break
         step = -np.linalg.solve(jacobian, value)
         step *= min(1.0, 0.3 / float(np.max(np.abs(step))))
-        trial, halvings = ripples(vector + step), 0
+        trial, halvings = shortfall(vector + step), 0
         while (trial is None or np.max(np.abs(trial)) > np.max(np.abs(value))) and halvings < 6:
             step /= 2
             halvings += 1
-            trial = ripples(vector + step)
+            trial = shortfall(vector + step)
         if trial is None:
             break
         # Broyden's rank-one update spares a new Jacobian while whole steps succeed
         change = np.outer(trial - value - jacobian @ step, step) / float(step @ step)
         jacobian = None if halvings else jacobian + change
         vector, value = vector + step, trial
-    return vector
+    return vector, np.inf if value is None else float(np.max(np.abs(value)))

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -39,6 +39,8 @@ class Sizing:
     ----------
     comb : Comb
         On the grid.
+    goal : Goal
+        Response that it was sized for: the asked one with the margins.
     g : tuple of float
         Prototype values g0 to g(n+1).
     couplings : Couplings
@@ -54,6 +56,7 @@ class Sizing:
     """
 
     comb: Comb
+    goal: Goal
     g: tuple[float, ...]
     couplings: Couplings
     electrical_length: float
@@ -74,27 +77,60 @@ def size(spec: Spec) -> Sizing:
         If the construction cannot do what is asked; says the figure and what would help.
     """
     asked = spec.passband.order
-    if asked is not None:
-        return _size_order(spec, asked, [])
+    return _size_order(spec, asked) if asked is not None else _smallest_order(spec)
+
+
+def _smallest_order(spec: Spec) -> Sizing:
+    """The smallest order that meets every stop band, from the prototype's estimate; else the highest."""
+    attempts = _Attempts(spec)
     order = _estimated_order(spec)
-    tried: dict[int, Sizing] = {}
-    while True:
-        if order not in tried:
-            tried[order] = _size_order(spec, order, [])
-        enough = meets_stopbands(spec, tried[order].comb, tried[order].solver)
-        if enough and (order == 2 or order - 1 in tried):
-            return _with_order_note(
-                tried[order], "smallest order whose sized comb rejects every stop band as asked"
-            )
-        if not enough and order + 1 in tried:
-            return _with_order_note(
-                tried[order + 1], "smallest order whose sized comb rejects every stop band as asked"
-            )
-        if not enough and order == _HIGHEST_ORDER:
-            return _with_order_note(
-                tried[order], f"the highest allowed; even order {order} misses a stop band"
-            )
-        order += -1 if enough else 1
+    if attempts.meet(order):
+        while order > 2 and attempts.meet(order - 1):
+            order -= 1
+    else:
+        while order < _HIGHEST_ORDER and not attempts.meet(order + 1):
+            order += 1
+            if attempts.refused(order) and attempts.refused(order + 1):
+                break
+        order = min(order + 1, _HIGHEST_ORDER)
+    reason = "smallest order whose sized comb rejects every stop band as asked"
+    if not attempts.meet(order):
+        reason = "the highest that can be built; it misses a stop band"
+    return attempts.sizing(order, reason)
+
+
+class _Attempts:
+    """Combs of one specification by their order."""
+
+    def __init__(self, spec: Spec) -> None:
+        self._spec = spec
+        self._sized: dict[int, Sizing | LayoutError] = {}
+
+    def meet(self, order: int) -> bool:
+        """True when the comb of this order can be built and rejects every stop band."""
+        sizing = self._attempt(order)
+        return isinstance(sizing, Sizing) and meets_stopbands(self._spec, sizing.comb, sizing.solver)
+
+    def refused(self, order: int) -> bool:
+        """True when the comb of this order cannot be built."""
+        return isinstance(self._attempt(order), LayoutError)
+
+    def sizing(self, order: int, reason: str) -> Sizing:
+        """The comb of this order or the next lower one that can be built; the first refusal if none can."""
+        for number in range(order, 1, -1):
+            found = self._sized.get(number)
+            if isinstance(found, Sizing):
+                note = Note(key="passband.order", value=str(number), reason=reason)
+                return replace(found, notes=(note, *found.notes))
+        raise next(error for error in self._sized.values() if isinstance(error, LayoutError))
+
+    def _attempt(self, order: int) -> Sizing | LayoutError:
+        if order not in self._sized:
+            try:
+                self._sized[order] = _size_order(self._spec, order)
+            except LayoutError as refusal:
+                self._sized[order] = refusal
+        return self._sized[order]
 
 
 def _estimated_order(spec: Spec) -> int:
@@ -113,27 +149,15 @@ def _estimated_order(spec: Spec) -> int:
     return int(min(max(np.ceil(max(orders) - 0.1), 2), _HIGHEST_ORDER))
 
 
-def _with_order_note(sizing: Sizing, reason: str) -> Sizing:
-    note = Note(key="passband.order", value=str(sizing.comb.order), reason=reason)
-    return Sizing(
-        comb=sizing.comb,
-        g=sizing.g,
-        couplings=sizing.couplings,
-        electrical_length=sizing.electrical_length,
-        notes=(note, *sizing.notes),
-        warnings=sizing.warnings,
-        solver=sizing.solver,
-    )
-
-
-def _size_order(spec: Spec, order: int, refused: list[LayoutError]) -> Sizing:
+def _size_order(spec: Spec, order: int) -> Sizing:
     """The first candidate that can be sized; the first refusal if none can."""
+    refusals: list[LayoutError] = []
     for candidate in candidates(spec, order):
         try:
             return _size_candidate(spec, candidate)
         except LayoutError as refusal:
-            refused.append(refusal)
-    raise refused[0]
+            refusals.append(refusal)
+    raise refusals[0]
 
 
 def _size_candidate(spec: Spec, candidate: Candidate) -> Sizing:
@@ -167,6 +191,7 @@ def _size_candidate(spec: Spec, candidate: Candidate) -> Sizing:
     warnings += _loss_warnings(spec, comb, solver)
     return Sizing(
         comb=comb,
+        goal=goal,
         g=tuple(float(v) for v in goal.g(choices.order)),
         couplings=wanted,
         electrical_length=resonator.electrical_length,
