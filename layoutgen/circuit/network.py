@@ -101,11 +101,8 @@ class Circuit:
     ) -> Complexes:
         """Admittance at the loaded end of a resonator, the feeds being taken away. [S]"""
         f = _frequencies(frequency)
-        matrix = self._matrix(f, losses, feeds=False)
         node = self._node(strip, self.comb.resonators[strip].load_position)
-        excitation = np.zeros((matrix.shape[1], 1))
-        excitation[node] = 1
-        return np.asarray(1 / np.linalg.solve(matrix, excitation)[:, node, 0], dtype=np.complex128)
+        return _seen_from(self._matrix(f, losses, feeds=False), [node])[:, 0, 0]
 
     def capacitor_resonance(self) -> float | None:
         """Lowest series resonance of the mounted chips; None without chips. [Hz]"""
@@ -127,14 +124,9 @@ class Circuit:
         if len(self.strips) != 2:
             raise InputError("Circuit", "strips", self.strips, "must be a pair")
         f = near * np.linspace(0.5, 2.0, 121)
-        matrix = self._matrix(f, NO_LOSSES, feeds=False)
         nodes = [self._node(i, self.comb.resonators[i].load_position) for i in self.strips]
-        excitation = np.zeros((matrix.shape[1], 1))
-        excitation[nodes[0]] = 1
-        voltage = np.linalg.solve(matrix, excitation)[:, nodes, 0]
-        even = _first_zero(f, (1 / (voltage[:, 0] + voltage[:, 1])).imag)
-        odd = _first_zero(f, (1 / (voltage[:, 0] - voltage[:, 1])).imag)
-        return even, odd
+        seen = _seen_from(self._matrix(f, NO_LOSSES, feeds=False), nodes).imag
+        return _first_zero(f, seen[:, 0, 0] + seen[:, 0, 1]), _first_zero(f, seen[:, 0, 0] - seen[:, 0, 1])
 
     def line_at_ground(self) -> tuple[Modes, float]:
         """Modes of the lowest section, and the length of line as inductive as a grounded end. [m]"""
@@ -258,6 +250,16 @@ def _frequencies(frequency: ArrayLike) -> Floats:
             "Circuit", "frequency", frequency, "every value must be finite and greater than 0 Hz"
         )
     return f
+
+
+def _seen_from(matrix: Complexes, nodes: Sequence[int]) -> Complexes:
+    """Admittance matrix seen from some nodes, the others left open; defined at a resonance as well."""
+    kept = np.asarray(nodes)
+    rest = np.setdiff1d(np.arange(matrix.shape[1]), kept)
+    inner = matrix[:, rest[:, None], rest[None, :]]
+    to_kept = np.linalg.solve(inner, matrix[:, rest[:, None], kept[None, :]])
+    seen = matrix[:, kept[:, None], kept[None, :]] - matrix[:, kept[:, None], rest[None, :]] @ to_kept
+    return np.asarray(seen, dtype=np.complex128)
 
 
 def _first_zero(f: Floats, susceptance: Floats) -> float:
