@@ -249,6 +249,20 @@ class Resonator(_Checked):
         return max(self.segments, key=lambda segment: segment.length).width
 
     @property
+    def widest(self) -> float:
+        """Width of its widest segment. [m]"""
+        return max(segment.width for segment in self.segments)
+
+    def width_at(self, height: float) -> float:
+        """Width at a height above the axis of the shorting vias. [m]"""
+        top = 0.0
+        for segment in self.segments:
+            top += segment.length
+            if height <= top:
+                return segment.width
+        return self.segments[-1].width
+
+    @property
     def load_position(self) -> float:
         """Height above the vias at which the chip's current leaves the line. [m]"""
         return self.length - (self.load.land_length / 2 if self.load else 0.0)
@@ -357,25 +371,12 @@ class Comb(_Checked):
     def gaps(self) -> tuple[float, ...]:
         """Bare laminate between neighbouring resonators at their widest, along the comb. [m]"""
         return tuple(
-            right.x - left.x - (_widest(left) + _widest(right)) / 2
+            right.x - left.x - (left.widest + right.widest) / 2
             for left, right in pairwise(self.resonators)
         )
 
     def feed_length(self, feed: Feed) -> float:
         """From the resonator's edge to the board edge. [m]"""
         resonator = self.resonators[feed.resonator]
-        edge = _width_at(resonator, feed.tap) / 2
+        edge = resonator.width_at(feed.tap) / 2
         return resonator.x - edge if feed.side == "left" else self.width - resonator.x - edge
-
-
-def _widest(resonator: Resonator) -> float:
-    return max(segment.width for segment in resonator.segments)
-
-
-def _width_at(resonator: Resonator, height: float) -> float:
-    top = 0.0
-    for segment in resonator.segments:
-        top += segment.length
-        if height <= top:
-            return segment.width
-    return resonator.segments[-1].width

@@ -22,7 +22,7 @@ from layoutgen.circuit.ends import (
     overhang_capacitance,
     step_capacitances,
 )
-from layoutgen.circuit.sections import Section, SectionSolver, cut_into_sections, segment_at
+from layoutgen.circuit.sections import Section, SectionSolver, cut_into_sections
 from layoutgen.comb import Comb, Feed
 from layoutgen.errors import InputError
 from layoutgen.lines import LossMatrices, Modes, line_admittance, surface_resistance, tap_capacitance
@@ -232,7 +232,7 @@ class Circuit:
         matrix[:, node, node] += near[:, 0, 0]
         matrix[:, port, node] += far[:, 0, 0]
         matrix[:, node, port] += far[:, 0, 0]
-        line_width = segment_at(comb.resonators[feed.resonator], feed.tap).width
+        line_width = comb.resonators[feed.resonator].width_at(feed.tap)
         fringe = tap_capacitance(
             line_width=line_width,
             feed_width=feed.width,

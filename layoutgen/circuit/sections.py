@@ -9,7 +9,7 @@ from itertools import pairwise
 import numpy as np
 from numpy.typing import NDArray
 
-from layoutgen.comb import Comb, Resonator, Segment, Stack
+from layoutgen.comb import Comb, Stack
 from layoutgen.lines import LineSolver, LossMatrices, Modes, StripMatrices
 
 __all__ = ["Section", "SectionSolver", "cut_into_sections"]
@@ -68,19 +68,9 @@ def cut_into_sections(comb: Comb, strips: Sequence[int]) -> list[Section]:
     for bottom, top in pairwise(heights):
         middle = (bottom + top) / 2
         present = [i for i in strips if comb.resonators[i].length > middle]
-        widths = tuple(segment_at(comb.resonators[i], middle).width for i in present)
+        widths = tuple(comb.resonators[i].width_at(middle) for i in present)
         sections.append(Section(bottom=bottom, top=top, strips=tuple(present), widths=widths))
     return sections
-
-
-def segment_at(resonator: Resonator, height: float) -> Segment:
-    """Segment of a resonator at a height above the axis of its vias."""
-    top = 0.0
-    for segment in resonator.segments:
-        top += segment.length
-        if height <= top:
-            return segment
-    return resonator.segments[-1]
 
 
 def _merged(heights: list[float]) -> list[float]:
