@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 import numpy as np
@@ -9,6 +10,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from layoutgen.circuit import ALL_LOSSES, NO_LOSSES, Circuit, SectionSolver, Verdict, judge
 from layoutgen.comb import Comb
+from layoutgen.constants import SPEED_OF_LIGHT
 from layoutgen.geometry import Artwork, Style, draw
 from layoutgen.sizing import Note, Sizing, size
 from layoutgen.spec import Spec
@@ -106,6 +108,8 @@ def design(spec: Spec) -> Design:
 def _style(spec: Spec) -> Style:
     """The shop's capability and the part's name, as drawing choices in millimetres."""
     shop = spec.board.shop
+    highest = max([2 * spec.passband.upper, *(stopband.upper for stopband in spec.stopbands)])
+    wavelength = SPEED_OF_LIGHT / (highest * math.sqrt(spec.construction.laminate.eps_r))
     return Style(
         part_number=spec.part.number,
         revision=spec.part.revision,
@@ -113,4 +117,6 @@ def _style(spec: Spec) -> Style:
         mask_expansion=shop.mask_expansion * 1e3,
         mask_dam=shop.mask_web * 1e3,
         edge_pullback=shop.conductor_to_edge * 1e3,
+        # common practice: a twentieth of the wavelength in the laminate at the top of the stop band
+        fence_pitch=min(max(wavelength / 20 * 1e3, 1.0), 2.0),
     )
