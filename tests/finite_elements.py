@@ -62,13 +62,13 @@ class Grid:
         Greatest step, over the height of the slab.
     """
 
-    smallest: float = 1e-3
+    smallest: float = 1e-2
     growth: float = 2.0
     largest: float = 1.0
 
     @property
     def finer(self) -> Grid:
-        """Each step cut in two, and one more step at each corner."""
+        """Every step cut in two, and still smaller ones at the corners."""
         return Grid(smallest=self.smallest / 4, growth=self.growth**0.5, largest=self.largest / 2)
 
 
@@ -111,7 +111,8 @@ def solve(box: Box, grid: Grid) -> Solution:
 
 
 def _lines(box: Box, grid: Grid) -> tuple[Floats, Floats]:
-    corners = sorted(c + side * w / 2 for c, w in zip(box.centres, box.widths, strict=True) for side in (-1, 1))
+    strips = zip(box.centres, box.widths, strict=True)
+    corners = sorted(centre + side * width / 2 for centre, width in strips for side in (-1, 1))
     top = box.height + box.cover
     return (
         _graded([0.0, *corners, box.width], box, grid),
@@ -125,7 +126,7 @@ def _graded(stops: list[float], box: Box, grid: Grid) -> Floats:
     pieces = [np.array(stops[:1])]
     for start, stop in pairwise(stops):
         length = stop - start
-        ends = (start != stops[0]) + (stop != stops[-1])
+        ends = int(start != stops[0]) + int(stop != stops[-1])
         # steps of a half piece (or of a whole one, when it crowds at one end only) from its corner
         steps = [smallest]
         while sum(steps) < length / ends:

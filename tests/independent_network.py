@@ -14,7 +14,7 @@ from skrf.media import DefinedGammaZ0
 from layoutgen.circuit import Circuit, SectionSolver, cut_into_sections
 from layoutgen.circuit.ends import chip_row, grounded_row, open_end, overhang_capacitance, step_capacitances
 from layoutgen.comb import Comb
-from layoutgen.lines import line_admittance, tap_capacitance
+from layoutgen.lines import line_admittance, tap_capacitance, tap_shortening
 
 Z0 = 50.0
 
@@ -30,7 +30,7 @@ class _Assembly:
         self.band = skrf.Frequency.from_f(frequency, unit="Hz")
         self.omega = 2 * np.pi * frequency
         self.strips = tuple(range(comb.order))
-        self.nodes: dict[tuple[int, int], list[tuple[skrf.Network, int]]] = {}
+        self.nodes: dict[tuple[object, int], list[tuple[skrf.Network, int]]] = {}
         self.planes: list[float] = []
 
     def circuit(self) -> SkrfCircuit:
@@ -41,7 +41,7 @@ class _Assembly:
             outer = SkrfCircuit.Port(self.band, f"port{port}", z0=feed.impedance)
             line = self._feed(port)
             connections.append([(outer, 0), (line, 0)])
-            self._attach(feed.resonator, feed.tap, line, 1)
+            self.nodes["junction", port].append((line, 1))
         for number, ends in enumerate(self.nodes.values()):
             if len(ends) == 1:
                 ends.append((SkrfCircuit.Open(self.band, f"open{number}", z0=Z0), 0))
@@ -60,14 +60,36 @@ class _Assembly:
     def _lines(self) -> None:
         sections = cut_into_sections(self.comb, self.strips)
         self.planes = [0.0, *(section.top for section in sections)]
-        for number, (section, (_, modes)) in enumerate(
+        for number, (section, (matrices, modes)) in enumerate(
             zip(sections, self.solver.modes(self.comb, sections), strict=True)
         ):
             near, far = line_admittance(self.band.f, modes, section.length)
             network = self._of_admittance(np.block([[near, far], [far, near]]), f"section{number}")
             for i, strip in enumerate(section.strips):
-                self._attach(strip, section.bottom, network, i)
+                tapped = [p for p, feed in enumerate(self.comb.feeds)
+                          if feed.resonator == strip and feed.tap == section.bottom]  # fmt: skip
+                if tapped:
+                    self._junction(tapped[0], network, i, float(matrices.inductance[i, i]))
+                else:
+                    self._attach(strip, section.bottom, network, i)
                 self._attach(strip, section.top, network, i + len(section.strips))
+
+    def _junction(self, port: int, section: skrf.Network, index: int, inductance: float) -> None:
+        """The tap between what is below it and the section above, two negative pieces of line around a node."""
+        feed = self.comb.feeds[port]
+        shortening = tap_shortening(**self._tap_shape(port))
+        y = 1 / (-1j * self.omega * inductance * shortening)
+        pieces = [self._of_admittance(np.moveaxis(np.array([[y, -y], [-y, y]]), 2, 0), f"{name}{port}")
+                  for name in ("below", "above")]  # fmt: skip
+        self._attach(feed.resonator, feed.tap, pieces[0], 0)
+        self.nodes["above", port] = [(pieces[1], 0), (section, index)]
+        fringe = self._capacitor(tap_capacitance(**self._tap_shape(port)), f"fringe{port}")
+        self.nodes["junction", port] = [(pieces[0], 1), (pieces[1], 1), (fringe, 0)]
+
+    def _tap_shape(self, port: int) -> dict[str, float]:
+        feed, stack = self.comb.feeds[port], self.comb.stack
+        return {"line_width": self.comb.resonators[feed.resonator].width, "feed_width": feed.width,
+                "height": stack.height, "eps_r": stack.eps_r, "thickness": stack.conductor}  # fmt: skip
 
     def _ends(self) -> None:
         comb, stack = self.comb, self.comb.stack
@@ -86,12 +108,6 @@ class _Assembly:
                       *step_capacitances(resonator, stack)]  # fmt: skip
             for number, (height, capacitance) in enumerate(shunts):
                 self._attach(i, height, self._capacitor(capacitance, f"shunt{i}_{number}"), 0)
-        for port, feed in enumerate(comb.feeds):
-            fringe = tap_capacitance(
-                line_width=resonators[feed.resonator].width, feed_width=feed.width, height=stack.height,
-                eps_r=stack.eps_r, thickness=stack.conductor,
-            )  # fmt: skip
-            self._attach(feed.resonator, feed.tap, self._capacitor(fringe, f"fringe{port}"), 0)
 
     def _capacitor(self, capacitance: float, name: str) -> skrf.Network:
         return self._of_admittance((1j * self.omega * capacitance)[:, None, None], name)

@@ -9,6 +9,7 @@ per radian is small).
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass
 from typing import Literal
 
 import numpy as np
@@ -22,10 +23,17 @@ from layoutgen.circuit.ends import (
     overhang_capacitance,
     step_capacitances,
 )
-from layoutgen.circuit.sections import Section, SectionSolver, cut_into_sections
+from layoutgen.circuit.sections import SectionSolver, cut_into_sections
 from layoutgen.comb import Comb, Feed
 from layoutgen.errors import InputError
-from layoutgen.lines import LossMatrices, Modes, line_admittance, surface_resistance, tap_capacitance
+from layoutgen.lines import (
+    LossMatrices,
+    Modes,
+    line_admittance,
+    surface_resistance,
+    tap_capacitance,
+    tap_shortening,
+)
 
 __all__ = ["ALL_LOSSES", "Circuit", "Mechanism"]
 
@@ -56,7 +64,9 @@ class Circuit:
         self.strips = tuple(range(comb.order) if strips is None else strips)
         self._solver = solver or SectionSolver(comb.stack, comb.width)
         self._sections = cut_into_sections(comb, self.strips)
-        self._modes = [modes for _, modes in self._solver.modes(comb, self._sections)]
+        solved = self._solver.modes(comb, self._sections)
+        self._matrices = [matrices for matrices, _ in solved]
+        self._modes = [modes for _, modes in solved]
         self._loss_matrices: list[LossMatrices] | None = None
         self._place_nodes()
         stack = comb.stack
@@ -146,32 +156,46 @@ class Circuit:
                 present |= set(self._sections[plane - 1].strips)
             for strip in sorted(present):
                 self._index[strip, plane] = 2 + len(self._index)
+        first = 2 + len(self._index)
+        self._taps = [
+            _Tap(
+                feed=feed, plane=self._plane(feed.tap), junction=first + 2 * port, above=first + 2 * port + 1
+            )
+            for port, feed in enumerate(self.comb.feeds)
+        ]
+
+    def _plane(self, height: float) -> int:
+        return int(np.argmin([abs(p - height) for p in self._planes]))
 
     def _node(self, strip: int, height: float) -> int:
-        plane = int(np.argmin([abs(p - height) for p in self._planes]))
-        return self._index[strip, plane]
+        return self._index[strip, self._plane(height)]
 
     # -- assembly
 
     def _matrix(self, f: Floats, losses: frozenset[Mechanism], *, feeds: bool) -> Complexes:
-        size = 2 + len(self._index)
+        size = 2 + len(self._index) + 2 * len(self._taps)
         matrix = np.zeros((len(f), size, size), dtype=complex)
-        for number, section in enumerate(self._sections):
-            self._add_section(matrix, f, number, section, losses)
+        for number in range(len(self._sections)):
+            self._add_section(matrix, f, number, losses, feeds=feeds)
         self._add_ends(matrix, f, losses)
-        for port, feed in enumerate(self.comb.feeds):
+        for port, tap in enumerate(self._taps):
             if feeds:
-                self._add_feed(matrix, f, port, feed, losses)
+                self._add_junction(matrix, f, tap)
+                self._add_feed(matrix, f, port, tap, losses)
             else:
-                matrix[:, port, port] += 1.0
+                # nodes that nothing is joined to
+                for node in (port, tap.junction, tap.above):
+                    matrix[:, node, node] += 1.0
         return matrix
 
     def _add_section(
-        self, matrix: Complexes, f: Floats, number: int, section: Section, losses: frozenset[Mechanism]
+        self, matrix: Complexes, f: Floats, number: int, losses: frozenset[Mechanism], *, feeds: bool
     ) -> None:
+        section = self._sections[number]
         loss = self._losses()[number] if losses & {"conductor", "dielectric"} else None
         near, far = self._line(f, self._modes[number], loss, section.length, losses)
-        bottom = np.array([self._index[i, number] for i in section.strips])
+        above = {(tap.feed.resonator, tap.plane): tap.above for tap in self._taps} if feeds else {}
+        bottom = np.array([above.get((i, number), self._index[i, number]) for i in section.strips])
         top = np.array([self._index[i, number + 1] for i in section.strips])
         for a, b, block in ((bottom, bottom, near), (top, top, near), (bottom, top, far), (top, bottom, far)):
             matrix[:, a[:, None], b[None, :]] += block
@@ -221,26 +245,49 @@ class Circuit:
                 node = self._node(i, height)
                 matrix[:, node, node] += 1j * omega * capacitance
 
+    def _add_junction(self, matrix: Complexes, f: Floats, tap: _Tap) -> None:
+        """The tap as a node between two short pieces of line that the junction takes away."""
+        feed, stack = tap.feed, self.comb.stack
+        shape = {
+            "line_width": self.comb.resonators[feed.resonator].width_at(feed.tap),
+            "feed_width": feed.width,
+            "height": stack.height,
+            "eps_r": stack.eps_r,
+            "thickness": stack.conductor,
+        }
+        section = self._sections[tap.plane]
+        strip = section.strips.index(feed.resonator)
+        inductance = -tap_shortening(**shape) * self._matrices[tap.plane].inductance[strip, strip]
+        series = 1 / (2j * np.pi * f * inductance)
+        for node in (self._index[feed.resonator, tap.plane], tap.above):
+            _add_between(matrix, node, tap.junction, series)
+        matrix[:, tap.junction, tap.junction] += 2j * np.pi * f * tap_capacitance(**shape)
+
     def _add_feed(
-        self, matrix: Complexes, f: Floats, port: int, feed: Feed, losses: frozenset[Mechanism]
+        self, matrix: Complexes, f: Floats, port: int, tap: _Tap, losses: frozenset[Mechanism]
     ) -> None:
-        comb, stack = self.comb, self.comb.stack
-        modes, loss = self._solver.single(feed.width)
-        near, far = self._line(f, modes, loss, comb.feed_length(feed), losses)
-        node = self._node(feed.resonator, feed.tap)
-        matrix[:, port, port] += near[:, 0, 0]
-        matrix[:, node, node] += near[:, 0, 0]
-        matrix[:, port, node] += far[:, 0, 0]
-        matrix[:, node, port] += far[:, 0, 0]
-        line_width = comb.resonators[feed.resonator].width_at(feed.tap)
-        fringe = tap_capacitance(
-            line_width=line_width,
-            feed_width=feed.width,
-            height=stack.height,
-            eps_r=stack.eps_r,
-            thickness=stack.conductor,
-        )
-        matrix[:, node, node] += 2j * np.pi * f * fringe
+        modes, loss = self._solver.single(tap.feed.width)
+        near, far = self._line(f, modes, loss, self.comb.feed_length(tap.feed), losses)
+        for a, b, block in ((port, port, near), (tap.junction, tap.junction, near), (port, tap.junction, far),
+                            (tap.junction, port, far)):  # fmt: skip
+            matrix[:, a, b] += block[:, 0, 0]
+
+
+@dataclass(frozen=True, kw_only=True)
+class _Tap:
+    """A feed with the plane it joins, the node of the junction and that of the line just above it."""
+
+    feed: Feed
+    plane: int
+    junction: int
+    above: int
+
+
+def _add_between(matrix: Complexes, a: int, b: int, admittance: Complexes) -> None:
+    matrix[:, a, a] += admittance
+    matrix[:, b, b] += admittance
+    matrix[:, a, b] -= admittance
+    matrix[:, b, a] -= admittance
 
 
 def _frequencies(frequency: ArrayLike) -> Floats:

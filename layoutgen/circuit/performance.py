@@ -87,7 +87,16 @@ class Performance:
 
 
 def attenuation_db(circuit: Circuit, frequency: Floats, losses: frozenset[Mechanism] = ALL_LOSSES) -> Floats:
-    """Attenuation from port 1 to port 2 over frequency. [dB]"""
+    """Attenuation from port 1 to port 2 over frequency. [dB]
+
+    Parameters
+    ----------
+    circuit : Circuit
+    frequency : ndarray, shape (n_freq,)
+        Greater than 0. [Hz]
+    losses : frozenset
+        Mechanisms that are counted.
+    """
     result: Floats = _db(circuit.scattering(frequency, losses)[:, 1, 0])
     return result
 
@@ -139,7 +148,15 @@ def measure(
 
 
 def unloaded_q(comb: Comb, solver: SectionSolver, near: float) -> tuple[float, ...]:
-    """Unloaded Q of each resonator alone, at its own resonance near a frequency. [1]"""
+    """Unloaded Q of each resonator alone, at its own resonance near a frequency. [1]
+
+    Parameters
+    ----------
+    comb : Comb
+    solver : SectionSolver
+    near : float
+        Resonances are looked for from 0.8 to 1.25 times this. [Hz]
+    """
     found: dict[object, float] = {}
     values = []
     for i, resonator in enumerate(comb.resonators):

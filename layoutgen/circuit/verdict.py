@@ -69,7 +69,15 @@ class Verdict:
 
 
 def judge(spec: Spec, comb: Comb, solver: SectionSolver) -> Verdict:
-    """Measure the comb's predicted response and hold it against every requirement."""
+    """Measure the comb's predicted response and hold it against every requirement.
+
+    Parameters
+    ----------
+    spec : Spec
+        What is required.
+    comb : Comb
+    solver : SectionSolver
+    """
     band = spec.passband
     performance = measure(comb, solver, lower=band.lower, upper=band.upper, return_loss=band.return_loss)
     judgements = [
@@ -90,7 +98,15 @@ def judge(spec: Spec, comb: Comb, solver: SectionSolver) -> Verdict:
 
 
 def meets_stopbands(spec: Spec, comb: Comb, solver: SectionSolver) -> bool:
-    """True when the lossy response rejects every stop band as asked."""
+    """True when the lossy response rejects every stop band as asked.
+
+    Parameters
+    ----------
+    spec : Spec
+        What is required.
+    comb : Comb
+    solver : SectionSolver
+    """
     circuit = Circuit(comb, solver)
     return all(_least_attenuation(circuit, s) >= s.rejection for s in spec.stopbands)
 

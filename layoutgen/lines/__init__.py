@@ -8,6 +8,7 @@ from layoutgen.lines.junctions import (
     open_end_extension,
     step_extension,
     tap_capacitance,
+    tap_shortening,
 )
 from layoutgen.lines.loss import roughness_factor, skin_depth, surface_resistance
 from layoutgen.lines.microstrip import (
@@ -51,6 +52,7 @@ __all__ = [
     "step_extension",
     "surface_resistance",
     "tap_capacitance",
+    "tap_shortening",
     "via_resistance",
     "width_for_impedance",
 ]

@@ -146,6 +146,15 @@ def single_line(*, width: ArrayLike, height: ArrayLike, eps_r: ArrayLike, thickn
 def width_for_impedance(impedance: float, *, height: float, eps_r: float, thickness: float = 0.0) -> float:
     """Width of an open microstrip line of a wanted impedance, by inverting `single_line`. [m]
 
+    Parameters
+    ----------
+    impedance : float
+        Wanted. [ohm]
+    height, thickness : float
+        Of slab and strip. [m]
+    eps_r : float
+        Relative permittivity of the slab. [1]
+
     Raises
     ------
     InputError

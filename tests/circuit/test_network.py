@@ -102,8 +102,12 @@ def test_any_comb_is_passive_and_reciprocal(comb, start):
 
 
 def test_each_mechanism_adds_loss_and_together_they_nearly_add_up():
-    """Small losses add; the resonators' own Q do as reciprocals (common practice, first order)."""
+    """Small losses add, to first order; all are a tenth of a real board's here, the second order is 5 %."""
     comb = chip_comb()
+    stack = replace(comb.stack, tan_delta=comb.stack.tan_delta / 10, conductivity=100 * comb.stack.conductivity)
+    loads = [replace(r.load, resistance=r.load.resistance / 10) for r in comb.resonators]
+    resonators = tuple(replace(r, load=load) for r, load in zip(comb.resonators, loads, strict=True))
+    comb = replace(comb, stack=stack, resonators=resonators)
     solver = SectionSolver(comb.stack, comb.width)
     circuit = Circuit(comb, solver)
     f = np.linspace(1.0e9, 2.2e9, 400)
@@ -115,7 +119,7 @@ def test_each_mechanism_adds_loss_and_together_they_nearly_add_up():
     base = loss(NO_LOSSES)
     single = [loss(frozenset({m})) - base for m in sorted(ALL_LOSSES)]
     assert min(single) > 0
-    assert loss(ALL_LOSSES) - base == pytest.approx(sum(single), rel=0.1, abs=0)
+    assert loss(ALL_LOSSES) - base == pytest.approx(sum(single), rel=0.05, abs=0)
 
 
 def test_dielectric_q_of_a_resonator_is_the_reciprocal_of_filled_energy_times_loss_tangent():
