@@ -1,8 +1,8 @@
 """Capacitance of strips in a closed metal box by finite elements, by a general library (scikit-fem).
 
-Nothing is shared with the strip solver: second-order triangles on a rectangular grid that shrinks
-geometrically towards every corner of the strips. A capacitance matrix from the energy of any trial field is
-too large (Thomson's principle), so self terms come down to the exact value as the grid gets finer.
+Nothing is shared with the strip solver: triangles of second order (or higher) on a rectangular grid that
+shrinks geometrically towards every corner of the strips. A capacitance matrix from the energy of any trial
+field is too large (Thomson's principle), so self terms come down to the exact value as the grid gets finer.
 """
 
 from __future__ import annotations
@@ -80,10 +80,11 @@ class Solution:
     unknowns: int
 
 
-def solve(box: Box, grid: Grid) -> Solution:
-    """Capacitance matrix of a box by second-order finite elements."""
+def solve(box: Box, grid: Grid, order: int = 2) -> Solution:
+    """Capacitance matrix of a box by finite elements of an order from 2 to 4."""
     x, y = _lines(box, grid)
-    basis = skfem.Basis(skfem.MeshTri.init_tensor(x, y), skfem.ElementTriP2())
+    element = {2: skfem.ElementTriP2, 3: skfem.ElementTriP3, 4: skfem.ElementTriP4}[order]
+    basis = skfem.Basis(skfem.MeshTri.init_tensor(x, y), element())
 
     @skfem.BilinearForm
     def energy(u, v, w):

@@ -20,6 +20,7 @@ from scipy.optimize import brentq
 from layoutgen.circuit import NO_LOSSES, Circuit, SectionSolver, ends
 from layoutgen.circuit.ends import chip_row, grounded_row
 from layoutgen.comb import ChipLoad, Comb, Feed, Resonator, Segment, Stack, ViaRow
+from layoutgen.constants import SPEED_OF_LIGHT
 from layoutgen.design import design
 from layoutgen.lines import LineSolver, StripMatrices, section
 from layoutgen.spec import load_spec
@@ -33,16 +34,16 @@ DEMO = Path(__file__).parents[1] / "outputs" / "harbour-telemetry.toml"
 
 
 def via_row(drill: float) -> ViaRow:
-    return ViaRow(count=1, pitch=0.7 * MM, drill=drill, finished=0.7 * drill, pad=0.78 * MM)
+    return ViaRow(count=1, pitch=0.7 * MM, drill=drill, finished=0.7 * drill, pad=0.76 * MM)
 
 
 def drawn(values: dict[str, float], drill: float, extra: float) -> Comb:
     """The resonator twice, too far apart to matter, as a comb needs two."""
     load = ChipLoad(
         case="short", capacitance=values["load_pF"] * PF, tolerance=0.0, resistance=0.0, inductance=extra,
-        body_length=0.7 * MM, body_width=0.5 * MM, body_height=0.3 * MM, current_height=0.15 * MM,
-        land_length=0.2 * MM, land_width=0.5 * MM, land_gap=0.3 * MM, pad_length=0.7 * MM, pad_width=0.8 * MM,
-        via_offset=0.3 * MM, vias=via_row(0.35 * MM),
+        body_length=0.4 * MM, body_width=0.5 * MM, body_height=0.3 * MM, current_height=0.15 * MM,
+        land_length=0.1 * MM, land_width=0.5 * MM, land_gap=0.2 * MM, pad_length=0.7 * MM, pad_width=0.8 * MM,
+        via_offset=0.15 * MM, vias=via_row(0.5 * MM),
     )  # fmt: skip
     cover = values.get("cover_heights")
     stack = Stack(
@@ -76,7 +77,7 @@ def budget_comb(**changes: float) -> Comb:
         row = grounded_row(drawn(values, drill, 0.0).stack, [resonator.short], [0.0], [resonator.width])
         return float(row.inductance[0, 0]) / NH - values["via_nH"]
 
-    drill = brentq(via, 0.1 * MM, 0.75 * MM)
+    drill = brentq(via, 0.1 * MM, 0.74 * MM)
     chips = chip_row(drawn(values, drill, 0.0), [0])
     residual = values["load_nH"] * NH - float(chips.path[0, 0] + chips.ground.inductance[0, 0])
     return drawn(values, drill, residual)
@@ -117,28 +118,22 @@ def total_electrical_length() -> float:
     return float(np.degrees(line + below + above))
 
 
-def test_the_line_of_the_budget():
-    """Printed to 0.1 ohm; half a percent for the finite differences (the copper's corners)."""
-    impedance, _ = line_impedance_and_velocity()
-
-    assert impedance == pytest.approx(BUDGET["impedance_ohm"], rel=0.005, abs=0.05)
-
-
 def test_the_resonator_is_as_long_as_the_budget_says():
     """Printed to a degree."""
     assert total_electrical_length() == pytest.approx(BUDGET["length_deg"], rel=0, abs=0.5)
 
 
-@pytest.mark.parametrize("row", rows("budget.toml", "resonator"), ids=lambda r: f"{r['key']} {r['change']:+g}")
+@pytest.mark.parametrize(
+    "row", rows("budget.toml", "resonator"), ids=lambda r: f"{r['key']} {r['change']:+g}"
+)
 def test_the_resonance_shifts_as_budgeted(row):
     key, change = row["key"], row["change"]
     before = budget_length() if key == "length_mm" else float(BUDGET.get(key, 0.0))
 
     shift = 100 * (resonance(budget_comb(**{key: before + change})) / (BUDGET["f_GHz"] * 1e9) - 1)
 
-    # half a step of print; 6 %, as the ends' capacitances (a few hundredths of the load), which the budget
-    # leaves out, do not change with it
-    assert shift == pytest.approx(row["shift_percent"], rel=0.06, abs=row["print_step"] / 2)
+    # half a step of print; 4 %, as the open end, which the budget leaves out, adds 2.5 % to the load
+    assert abs(shift - row["shift_percent"]) < row["print_step"] / 2 + 0.04 * abs(row["shift_percent"])
 
 
 # -- a pair
@@ -205,7 +200,9 @@ def centre_and_bandwidth() -> tuple[float, float]:
     return (passing[0] + passing[-1]) / 2, passing[-1] - passing[0]
 
 
-def scaled_matrices(monkeypatch: pytest.MonkeyPatch, change: Callable[[StripMatrices], StripMatrices]) -> None:
+def scaled_matrices(
+    monkeypatch: pytest.MonkeyPatch, change: Callable[[StripMatrices], StripMatrices]
+) -> None:
     honest = LineSolver.matrices
     monkeypatch.setattr(LineSolver, "matrices", lambda *a, **k: [change(m) for m in honest(*a, **k)])
 
@@ -253,48 +250,71 @@ def relative(before: float, after: float) -> float:
 
 
 @pytest.mark.parametrize(
-    ("mistake", "least", "most"),
+    ("mistake", "wrong"),
     [
-        # sensitivities of f0 at 45 degrees from the budget's model: -0.11 to eps_eff, -0.61 to length, -0.39 to
-        # impedance and to the load. A third each way, as the demo's line and load are not the budget's.
-        (too_much_capacitance, -0.30, -0.14),  # eps_eff 2 % up, no other change: -0.22 %
-        (too_much_permittivity_of_vacuum, 0.52, 1.04),  # impedance 2 % down: +0.78 %
-        (light_too_fast, 1.4, 2.6),  # length and impedance 2 % down: +2.0 %
-        (vias_too_long, -0.9, -0.15),  # 0.09 nH is 1.2 % of f0 on 0.5 mm; here 0.8 mm and two vias
-        (no_path_of_the_chip, 2.0, 7.0),  # 6.3 % with 3.3 pF, 3.2 % with 1.23 pF
-        (no_open_end, 0.4, 2.0),  # some hundredths of a picofarad beside 1.5 pF, times 0.39
+        (too_much_capacitance, {"eps_eff": 2.0}),
+        (too_much_permittivity_of_vacuum, {"impedance": -2.0}),
+        (light_too_fast, {"impedance": -2.0, "length": -2.0}),
     ],
 )
-def test_the_centre_of_the_demo_depends_on_every_piece_of_physics(monkeypatch, mistake, least, most):
+def test_two_percent_wrong_fields_move_the_centre_of_the_demo(monkeypatch, mistake, wrong):
+    """By what the sensitivities say, within a third: the demo's line is 43 degrees and its load not ideal."""
+    sensitivity = table("budget.toml", "sensitivity")
+    expected = sum(sensitivity[what] * percent for what, percent in wrong.items())
     before, _ = centre_and_bandwidth()
     mistake(monkeypatch)
 
     after, _ = centre_and_bandwidth()
 
-    assert least < relative(before, after) < most
+    assert relative(before, after) == pytest.approx(expected, rel=1 / 3, abs=0)
 
 
-@pytest.mark.parametrize(
-    ("mistake", "least", "most"),
-    [
-        # bandwidth follows the couplings, except for the part of them that is in the vias and the chips
-        (couplings_too_strong, 1.2, 2.4),
-        # 24 % with 3.3 pF; the path is about as long here and the load half as large
-        (no_path_of_the_chip, 8.0, 30.0),
-    ],
-)
-def test_the_bandwidth_of_the_demo_depends_on_couplings_and_mounting(monkeypatch, mistake, least, most):
+def test_every_termination_moves_the_centre_of_the_demo(monkeypatch):
+    forgotten = table("budget.toml", "forgetting")
+    before, _ = centre_and_bandwidth()
+
+    def shift(mistake: Callable[[pytest.MonkeyPatch], None]) -> float:
+        with monkeypatch.context() as patch:
+            mistake(patch)
+            return relative(before, centre_and_bandwidth()[0])
+
+    # a fifth of a via; the demo's laminate is thicker and its vias are two: half to three times the budget's
+    assert 0.5 < -shift(vias_too_long) / (0.2 * forgotten["via_0_08_nH"]) < 3
+    # the demo's 1.5 pF lies between the budget's 1.23 pF and the filter's 3.3 pF; its path is not shorter
+    least, most = 2 / 3 * forgotten["load_path_0_4_nH"], forgotten["load_path_of_3_3_pF"]
+    assert least < shift(no_path_of_the_chip) < most
+    # an open end is worth about 0.4 laminate heights of line (common practice), less facing a ground pad
+    line = 0.4 * demo().stack.height / demo().resonators[0].length
+    end = -100 * table("budget.toml", "sensitivity")["length"] * line
+    assert 0.3 * end < shift(no_open_end) < 1.2 * end
+
+
+def test_the_bandwidth_of_the_demo_depends_on_the_couplings(monkeypatch):
+    """It follows the lines' couplings, of which those of vias and chips are not part."""
     _, before = centre_and_bandwidth()
-    mistake(monkeypatch)
+    couplings_too_strong(monkeypatch)
 
     _, after = centre_and_bandwidth()
 
-    assert least < relative(before, after) < most
+    assert 1.2 < relative(before, after) < 2.4
+
+
+def check_the_tables() -> None:
+    """Single thick lines against converged solutions, as accurate as the solver promises."""
+    for row in rows("lines.toml", "microstrip_thick"):
+        solver = LineSolver(height=MM, eps_r=row["eps_r"], thickness=row["t_over_h"] * MM, cover=None,
+                            reach=10 * MM)  # fmt: skip
+        one = solver.matrices([0.0], [row["u"] * MM], [[0]])[0]
+        impedance = np.sqrt(one.inductance[0, 0] / one.capacitance[0, 0])
+        slowing = np.sqrt(one.inductance[0, 0] * one.capacitance[0, 0]) * SPEED_OF_LIGHT
+        assert impedance == pytest.approx(row["Z0_ohm"], rel=1e-3, abs=0)
+        assert slowing**2 == pytest.approx(row["eps_eff"], rel=1e-3, abs=0)
 
 
 @pytest.mark.parametrize("mistake", [too_much_capacitance, too_much_permittivity_of_vacuum, light_too_fast])
-def test_two_percent_wrong_fields_do_not_give_the_line_of_the_budget(monkeypatch, mistake):
+def test_two_percent_wrong_fields_are_not_those_of_the_tables(monkeypatch, mistake):
+    check_the_tables()
     mistake(monkeypatch)
 
     with pytest.raises(AssertionError):
-        test_the_line_of_the_budget()
+        check_the_tables()

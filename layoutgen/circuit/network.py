@@ -159,10 +159,16 @@ class Circuit:
         first = 2 + len(self._index)
         self._taps = [
             _Tap(
-                feed=feed, plane=self._plane(feed.tap), junction=first + 2 * port, above=first + 2 * port + 1
+                feed=feed,
+                port=port,
+                plane=self._plane(feed.tap),
+                junction=first + 2 * port,
+                above=first + 2 * port + 1,
             )
             for port, feed in enumerate(self.comb.feeds)
+            if feed.resonator in self.strips
         ]
+        self._size = first + 2 * len(self.comb.feeds)
 
     def _plane(self, height: float) -> int:
         return int(np.argmin([abs(p - height) for p in self._planes]))
@@ -173,19 +179,18 @@ class Circuit:
     # -- assembly
 
     def _matrix(self, f: Floats, losses: frozenset[Mechanism], *, feeds: bool) -> Complexes:
-        size = 2 + len(self._index) + 2 * len(self._taps)
-        matrix = np.zeros((len(f), size, size), dtype=complex)
+        matrix = np.zeros((len(f), self._size, self._size), dtype=complex)
         for number in range(len(self._sections)):
             self._add_section(matrix, f, number, losses, feeds=feeds)
         self._add_ends(matrix, f, losses)
-        for port, tap in enumerate(self._taps):
-            if feeds:
-                self._add_junction(matrix, f, tap)
-                self._add_feed(matrix, f, port, tap, losses)
-            else:
-                # nodes that nothing is joined to
-                for node in (port, tap.junction, tap.above):
-                    matrix[:, node, node] += 1.0
+        joined = self._taps if feeds else []
+        for tap in joined:
+            self._add_junction(matrix, f, tap)
+            self._add_feed(matrix, f, tap, losses)
+        # ports and junctions that nothing is joined to keep the matrix regular and touch nothing else
+        used = {node for tap in joined for node in (tap.port, tap.junction, tap.above)}
+        for node in {0, 1, *range(2 + len(self._index), self._size)} - used:
+            matrix[:, node, node] += 1.0
         return matrix
 
     def _add_section(
@@ -263,21 +268,21 @@ class Circuit:
             _add_between(matrix, node, tap.junction, series)
         matrix[:, tap.junction, tap.junction] += 2j * np.pi * f * tap_capacitance(**shape)
 
-    def _add_feed(
-        self, matrix: Complexes, f: Floats, port: int, tap: _Tap, losses: frozenset[Mechanism]
-    ) -> None:
+    def _add_feed(self, matrix: Complexes, f: Floats, tap: _Tap, losses: frozenset[Mechanism]) -> None:
         modes, loss = self._solver.single(tap.feed.width)
         near, far = self._line(f, modes, loss, self.comb.feed_length(tap.feed), losses)
-        for a, b, block in ((port, port, near), (tap.junction, tap.junction, near), (port, tap.junction, far),
-                            (tap.junction, port, far)):  # fmt: skip
-            matrix[:, a, b] += block[:, 0, 0]
+        ends = (tap.port, tap.junction)
+        for a in ends:
+            for b in ends:
+                matrix[:, a, b] += (near if a == b else far)[:, 0, 0]
 
 
 @dataclass(frozen=True, kw_only=True)
 class _Tap:
-    """A feed with the plane it joins, the node of the junction and that of the line just above it."""
+    """A feed with its port, the plane it joins, the nodes of the junction and of the line just above it."""
 
     feed: Feed
+    port: int
     plane: int
     junction: int
     above: int
