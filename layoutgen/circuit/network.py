@@ -203,7 +203,7 @@ class Circuit:
         bottom = np.array([above.get((i, number), self._index[i, number]) for i in section.strips])
         top = np.array([self._index[i, number + 1] for i in section.strips])
         for a, b, block in ((bottom, bottom, near), (top, top, near), (bottom, top, far), (top, bottom, far)):
-            matrix[:, a[:, None], b[None, :]] += block
+            _add_block(matrix, a, b, block)
 
     def _losses(self) -> list[LossMatrices]:
         if self._loss_matrices is None:
@@ -231,14 +231,11 @@ class Circuit:
     def _add_ends(self, matrix: Complexes, f: Floats, losses: frozenset[Mechanism]) -> None:
         omega, stack = 2 * np.pi * f, self.comb.stack
         shorts = np.array([self._index[i, 0] for i in self.strips])
-        matrix[:, shorts[:, None], shorts[None, :]] += np.linalg.inv(
-            self._ground.impedance(f, lossy="via" in losses)
-        )
+        _add_block(matrix, shorts, shorts, np.linalg.inv(self._ground.impedance(f, lossy="via" in losses)))
         if self._chips is not None:
             loads = np.array([self._node(i, self.comb.resonators[i].load_position) for i in self.strips])
-            matrix[:, loads[:, None], loads[None, :]] += self._chips.admittance(
-                f, lossy_part="capacitor" in losses, lossy_vias="via" in losses
-            )
+            chips = self._chips.admittance(f, lossy_part="capacitor" in losses, lossy_vias="via" in losses)
+            _add_block(matrix, loads, loads, chips)
         for i in self.strips:
             resonator = self.comb.resonators[i]
             shunts = [
@@ -286,6 +283,16 @@ class _Tap:
     plane: int
     junction: int
     above: int
+
+
+def _add_block(
+    matrix: Complexes, rows: NDArray[np.int64], columns: NDArray[np.int64], block: ArrayLike
+) -> None:
+    """Add a block at some rows and columns; neighbouring nodes take the fast way, a view of the matrix."""
+    if (np.diff(rows) == 1).all() and (np.diff(columns) == 1).all():
+        matrix[:, rows[0] : rows[-1] + 1, columns[0] : columns[-1] + 1] += np.asarray(block)
+    else:
+        matrix[:, rows[:, None], columns[None, :]] += np.asarray(block)
 
 
 def _add_between(matrix: Complexes, a: int, b: int, admittance: Complexes) -> None:
