@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import lru_cache
 from itertools import pairwise
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -141,6 +142,8 @@ def chip_row(comb: Comb, strips: Sequence[int]) -> ChipRow:
     loads = [_load(comb.resonators[i]) for i in strips]
     centres = [comb.resonators[i].x for i in strips]
     first = loads[0]
+    if any(replace(load, **_VALUES) != replace(first, **_VALUES) for load in loads):
+        raise InputError("chip_row", "resonators", "chips on different lands", "must all be mounted alike")
     body = path_inductance(
         centres=centres,
         width=first.body_width,
@@ -161,6 +164,10 @@ def chip_row(comb: Comb, strips: Sequence[int]) -> ChipRow:
         ),
         pad_capacitance=np.array(pads),
     )
+
+
+_VALUES: dict[str, Any] = {"capacitance": 1.0, "tolerance": 0.0, "resistance": 0.0, "inductance": 0.0}
+"""Stands for what may differ from chip to chip."""
 
 
 def _load(resonator: Resonator) -> ChipLoad:

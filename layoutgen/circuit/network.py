@@ -23,6 +23,7 @@ from layoutgen.circuit.ends import (
     overhang_capacitance,
     step_capacitances,
 )
+from layoutgen.circuit.nodal import NodalMatrix
 from layoutgen.circuit.sections import SectionSolver, cut_into_sections
 from layoutgen.comb import Comb, Feed
 from layoutgen.errors import InputError
@@ -97,14 +98,10 @@ class Circuit:
             Each port referred to its own impedance.
         """
         f = _frequencies(frequency)
-        matrix = self._matrix(f, losses, feeds=True)
+        seen = self._matrix(f, losses, feeds=True).seen_from([0, 1])
         root = np.array([1 / np.sqrt(feed.impedance) for feed in self.comb.feeds])
-        for port in (0, 1):
-            matrix[:, port, port] += root[port] ** 2
-        excitation = np.zeros((matrix.shape[1], 2))
-        excitation[0, 0], excitation[1, 1] = root
-        waves = np.linalg.solve(matrix, excitation)[:, :2, :]
-        return np.asarray(2 * root[None, :, None] * waves - np.eye(2), dtype=np.complex128)
+        waves = np.linalg.inv(seen + np.diag(root**2)) * np.outer(root, root)
+        return np.asarray(2 * waves - np.eye(2), dtype=np.complex128)
 
     def input_admittance(
         self, frequency: ArrayLike, strip: int, losses: frozenset[Mechanism] = NO_LOSSES
@@ -112,7 +109,7 @@ class Circuit:
         """Admittance at the loaded end of a resonator, the feeds being taken away. [S]"""
         f = _frequencies(frequency)
         node = self._node(strip, self.comb.resonators[strip].load_position)
-        return _seen_from(self._matrix(f, losses, feeds=False), [node])[:, 0, 0]
+        return self._matrix(f, losses, feeds=False).seen_from([node])[:, 0, 0]
 
     def capacitor_resonance(self) -> float | None:
         """Lowest series resonance of the mounted chips; None without chips. [Hz]"""
@@ -135,7 +132,7 @@ class Circuit:
             raise InputError("Circuit", "strips", self.strips, "must be a pair")
         f = near * np.linspace(0.5, 2.0, 121)
         nodes = [self._node(i, self.comb.resonators[i].load_position) for i in self.strips]
-        seen = _seen_from(self._matrix(f, NO_LOSSES, feeds=False), nodes).imag
+        seen = self._matrix(f, NO_LOSSES, feeds=False).seen_from(nodes).imag
         return _first_zero(f, seen[:, 0, 0] + seen[:, 0, 1]), _first_zero(f, seen[:, 0, 0] - seen[:, 0, 1])
 
     def line_at_ground(self) -> tuple[Modes, float]:
@@ -178,8 +175,8 @@ class Circuit:
 
     # -- assembly
 
-    def _matrix(self, f: Floats, losses: frozenset[Mechanism], *, feeds: bool) -> Complexes:
-        matrix = np.zeros((len(f), self._size, self._size), dtype=complex)
+    def _matrix(self, f: Floats, losses: frozenset[Mechanism], *, feeds: bool) -> NodalMatrix:
+        matrix = NodalMatrix(len(f), self._size, lossless=not losses)
         for number in range(len(self._sections)):
             self._add_section(matrix, f, number, losses, feeds=feeds)
         self._add_ends(matrix, f, losses)
@@ -190,11 +187,11 @@ class Circuit:
         # ports and junctions that nothing is joined to keep the matrix regular and touch nothing else
         used = {node for tap in joined for node in (tap.port, tap.junction, tap.above)}
         for node in {0, 1, *range(2 + len(self._index), self._size)} - used:
-            matrix[:, node, node] += 1.0
+            matrix.add_to_ground(node, 1j)
         return matrix
 
     def _add_section(
-        self, matrix: Complexes, f: Floats, number: int, losses: frozenset[Mechanism], *, feeds: bool
+        self, matrix: NodalMatrix, f: Floats, number: int, losses: frozenset[Mechanism], *, feeds: bool
     ) -> None:
         section = self._sections[number]
         loss = self._losses()[number] if losses & {"conductor", "dielectric"} else None
@@ -203,7 +200,7 @@ class Circuit:
         bottom = np.array([above.get((i, number), self._index[i, number]) for i in section.strips])
         top = np.array([self._index[i, number + 1] for i in section.strips])
         for a, b, block in ((bottom, bottom, near), (top, top, near), (bottom, top, far), (top, bottom, far)):
-            _add_block(matrix, a, b, block)
+            matrix.add_block(a, b, block)
 
     def _losses(self) -> list[LossMatrices]:
         if self._loss_matrices is None:
@@ -228,14 +225,14 @@ class Circuit:
             conductance=omega * stack.tan_delta * slope if "dielectric" in losses else 0.0,
         )
 
-    def _add_ends(self, matrix: Complexes, f: Floats, losses: frozenset[Mechanism]) -> None:
+    def _add_ends(self, matrix: NodalMatrix, f: Floats, losses: frozenset[Mechanism]) -> None:
         omega, stack = 2 * np.pi * f, self.comb.stack
         shorts = np.array([self._index[i, 0] for i in self.strips])
-        _add_block(matrix, shorts, shorts, np.linalg.inv(self._ground.impedance(f, lossy="via" in losses)))
+        matrix.add_block(shorts, shorts, np.linalg.inv(self._ground.impedance(f, lossy="via" in losses)))
         if self._chips is not None:
             loads = np.array([self._node(i, self.comb.resonators[i].load_position) for i in self.strips])
             chips = self._chips.admittance(f, lossy_part="capacitor" in losses, lossy_vias="via" in losses)
-            _add_block(matrix, loads, loads, chips)
+            matrix.add_block(loads, loads, chips)
         for i in self.strips:
             resonator = self.comb.resonators[i]
             shunts = [
@@ -245,9 +242,9 @@ class Circuit:
             ]
             for height, capacitance in shunts:
                 node = self._node(i, height)
-                matrix[:, node, node] += 1j * omega * capacitance
+                matrix.add_to_ground(node, 1j * omega * capacitance)
 
-    def _add_junction(self, matrix: Complexes, f: Floats, tap: _Tap) -> None:
+    def _add_junction(self, matrix: NodalMatrix, f: Floats, tap: _Tap) -> None:
         """The tap as a node between two short pieces of line that the junction takes away."""
         feed, stack = tap.feed, self.comb.stack
         shape = {
@@ -262,16 +259,16 @@ class Circuit:
         inductance = -tap_shortening(**shape) * self._matrices[tap.plane].inductance[strip, strip]
         series = 1 / (2j * np.pi * f * inductance)
         for node in (self._index[feed.resonator, tap.plane], tap.above):
-            _add_between(matrix, node, tap.junction, series)
-        matrix[:, tap.junction, tap.junction] += 2j * np.pi * f * tap_capacitance(**shape)
+            matrix.add_between(node, tap.junction, series)
+        matrix.add_to_ground(tap.junction, 2j * np.pi * f * tap_capacitance(**shape))
 
-    def _add_feed(self, matrix: Complexes, f: Floats, tap: _Tap, losses: frozenset[Mechanism]) -> None:
+    def _add_feed(self, matrix: NodalMatrix, f: Floats, tap: _Tap, losses: frozenset[Mechanism]) -> None:
         modes, loss = self._solver.single(tap.feed.width)
         near, far = self._line(f, modes, loss, self.comb.feed_length(tap.feed), losses)
-        ends = (tap.port, tap.junction)
-        for a in ends:
-            for b in ends:
-                matrix[:, a, b] += (near if a == b else far)[:, 0, 0]
+        port, junction = [tap.port], [tap.junction]
+        for a, b, block in ((port, port, near), (junction, junction, near), (port, junction, far),
+                            (junction, port, far)):  # fmt: skip
+            matrix.add_block(a, b, block)
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -285,23 +282,6 @@ class _Tap:
     above: int
 
 
-def _add_block(
-    matrix: Complexes, rows: NDArray[np.int64], columns: NDArray[np.int64], block: ArrayLike
-) -> None:
-    """Add a block at some rows and columns; neighbouring nodes take the fast way, a view of the matrix."""
-    if (np.diff(rows) == 1).all() and (np.diff(columns) == 1).all():
-        matrix[:, rows[0] : rows[-1] + 1, columns[0] : columns[-1] + 1] += np.asarray(block)
-    else:
-        matrix[:, rows[:, None], columns[None, :]] += np.asarray(block)
-
-
-def _add_between(matrix: Complexes, a: int, b: int, admittance: Complexes) -> None:
-    matrix[:, a, a] += admittance
-    matrix[:, b, b] += admittance
-    matrix[:, a, b] -= admittance
-    matrix[:, b, a] -= admittance
-
-
 def _frequencies(frequency: ArrayLike) -> Floats:
     f = np.atleast_1d(np.asarray(frequency, dtype=float))
     if not bool(np.all((f > 0) & np.isfinite(f))):
@@ -309,16 +289,6 @@ def _frequencies(frequency: ArrayLike) -> Floats:
             "Circuit", "frequency", frequency, "every value must be finite and greater than 0 Hz"
         )
     return f
-
-
-def _seen_from(matrix: Complexes, nodes: Sequence[int]) -> Complexes:
-    """Admittance matrix seen from some nodes, the others left open; defined at a resonance as well."""
-    kept = np.asarray(nodes)
-    rest = np.setdiff1d(np.arange(matrix.shape[1]), kept)
-    inner = matrix[:, rest[:, None], rest[None, :]]
-    to_kept = np.linalg.solve(inner, matrix[:, rest[:, None], kept[None, :]])
-    seen = matrix[:, kept[:, None], kept[None, :]] - matrix[:, kept[:, None], rest[None, :]] @ to_kept
-    return np.asarray(seen, dtype=np.complex128)
 
 
 def _first_zero(f: Floats, susceptance: Floats) -> float:

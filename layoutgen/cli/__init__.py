@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import os
 import sys
 import traceback
 from collections.abc import Sequence
@@ -13,6 +14,11 @@ from layoutgen.cli.console import Console
 from layoutgen.errors import LayoutError, ReadBackError
 
 __all__ = ["main"]
+
+# Batches of small matrices gain nothing from several threads, and lose much where the cores are busy.
+# Set before any numerics are loaded; a value that is already there stays.
+for _threads in ("OPENBLAS_NUM_THREADS", "OMP_NUM_THREADS", "MKL_NUM_THREADS"):
+    os.environ.setdefault(_threads, "1")
 
 MET, FAULT, INPUT, MISSED, READ_BACK, INTERRUPTED = 0, 1, 2, 3, 4, 130
 

@@ -56,6 +56,8 @@ class KernelTable:
         Distances of the tables. [m]
     rest : tuple of three splines
         Second antiderivative along x of the smooth rest, for the face pairs 00, 01 and 11. [m^2]
+    potential : tuple of three splines
+        The smooth rest itself. [1]
     mirrored : tuple of three splines or None
         The same for the strips' reflections in side walls, as functions of ``x + x'``, x from the left wall.
     """
@@ -65,6 +67,7 @@ class KernelTable:
     covered: bool
     grid: Floats
     rest: tuple[CubicSpline, CubicSpline, CubicSpline]
+    potential: tuple[CubicSpline, CubicSpline, CubicSpline]
     mirrored: tuple[CubicSpline, CubicSpline, CubicSpline] | None = None
 
     @property
@@ -114,12 +117,21 @@ def build_kernel(
     x = _grid(height, min(height, cover) if cover else height, reach)
     pairs = ((0.0, 0.0), (thickness, thickness), (2 * thickness, 0.0))
     image = (eps_r - 1) / (eps_r + 1)
-    rest = [_slab_images(x, s, height, image) for s, _ in pairs]
-    if cover is not None:
-        rest = [r + _cover_part(x, s, d, height, image, cover) for r, (s, d) in zip(rest, pairs, strict=True)]
-    first, second, third = (_even_spline(x, r) for r in rest)
+    rest, potential = [], []
+    for s, d in pairs:
+        twice, itself = _slab_images(x, s, height, image)
+        if cover is not None:
+            more_twice, more = _cover_part(x, s, d, height, image, cover)
+            twice, itself = twice + more_twice, itself + more
+        rest.append(_even_spline(x, twice))
+        potential.append(_even_spline(x, itself))
     return KernelTable(
-        image=image, thickness=thickness, covered=cover is not None, grid=x, rest=(first, second, third)
+        image=image,
+        thickness=thickness,
+        covered=cover is not None,
+        grid=x,
+        rest=(rest[0], rest[1], rest[2]),
+        potential=(potential[0], potential[1], potential[2]),
     )
 
 
@@ -168,19 +180,22 @@ def _grid(height: float, scale: float, reach: float) -> Floats:
     return np.asarray(points)
 
 
-def _slab_images(x: Floats, s: float, height: float, image: float) -> Floats:
-    """Second antiderivative of the images below the slab, all but the one in its upper face."""
+def _slab_images(x: Floats, s: float, height: float, image: float) -> tuple[Floats, Floats]:
+    """Images below the slab, all but the one in its upper face: second antiderivative, and potential."""
     count = 1 if image == 0 else max(2, int(np.ceil(np.log(_IMAGE_TOLERANCE) / np.log(image))))
     n = np.arange(1, count + 1)
     strength = (1 - image**2) * (-image) ** (n - 1)
     depth = np.asarray(s + 2 * n * height, dtype=np.float64)
-    result = np.asarray(log_twice(x[:, None], depth[None, :]) @ strength, dtype=np.float64)
-    # a constant and the reference of the antiderivative drop out of every second difference
-    return np.asarray(result - result[0])
+    twice = np.asarray(log_twice(x[:, None], depth[None, :]) @ strength, dtype=np.float64)
+    potential = np.asarray(np.log(np.hypot(x[:, None], depth[None, :])) @ strength, dtype=np.float64)
+    # the constant of the antiderivative drops out of every second difference
+    return np.asarray(twice - twice[0]), potential
 
 
-def _cover_part(x: Floats, s: float, d: float, height: float, image: float, cover: float) -> Floats:
-    """Second antiderivative of what a cover adds, by quadrature over the wave number."""
+def _cover_part(
+    x: Floats, s: float, d: float, height: float, image: float, cover: float
+) -> tuple[Floats, Floats]:
+    """What a cover adds, by quadrature over the wave number: second antiderivative, and potential."""
     top = 36.0 / (2 * cover - s)
     panels = max(8, int(np.ceil(top * x[-1] / 20)))
     node, weight = leggauss(16)
@@ -196,8 +211,9 @@ def _cover_part(x: Floats, s: float, d: float, height: float, image: float, cove
         + reflection**2 * np.exp(-k * (s + 2 * cover))
     )
     spectrum = -numerator / (1 + reflection * np.exp(-2 * k * cover)) / k
-    result: Floats = (2 * np.sin(np.outer(x, k) / 2) ** 2) @ (w * spectrum / k**2)
-    return result
+    rise = 2 * np.sin(np.outer(x, k) / 2) ** 2
+    weighted = w * spectrum
+    return np.asarray(rise @ (weighted / k**2)), np.asarray((1 - rise) @ weighted)
 
 
 def _wall_sums(kernel: KernelTable, faces: int, spacing: float) -> tuple[CubicSpline, CubicSpline]:
@@ -207,12 +223,12 @@ def _wall_sums(kernel: KernelTable, faces: int, spacing: float) -> tuple[CubicSp
     reflections.
     """
     s, d = kernel.heights[faces]
-    spline, reach, image = kernel.rest[faces], kernel.reach, kernel.image
+    potential, reach, image = kernel.potential[faces], kernel.reach, kernel.image
     copies = int(reach // (2 * spacing)) - 1
 
     def green(z: Floats) -> Floats:
         z = np.abs(z)
-        total = spline(np.minimum(z, reach), 2) - np.log(np.hypot(z, d))
+        total = potential(np.minimum(z, reach)) - np.log(np.hypot(z, d))
         if image:
             total += image * np.log(np.hypot(z, s))
         return np.asarray(np.where(z > reach, 0.0, total))

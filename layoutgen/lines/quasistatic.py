@@ -102,7 +102,8 @@ def solve_strips(
         raise InputError("solve_strips", "stack-up", got, "must be a slab of positive height under any cover")
     x, w = np.asarray(centres, dtype=float), np.asarray(widths, dtype=float)
     spacing = 0.0 if walls is None else walls[1] - walls[0]
-    reach = max(float(np.max(x + w / 2) - np.min(x - w / 2)), (2.1 if cover else 13.1) * spacing)
+    around = 13.1 * spacing if cover is None else 2.1 * spacing + 6 * (height + cover)
+    reach = max(float(np.max(x + w / 2) - np.min(x - w / 2)), around if walls else 0.0)
     kernel = build_kernel(height=height, eps_r=eps_r, thickness=thickness, cover=cover, reach=reach)
     return system.capacitance(kernel if walls is None else add_walls(kernel, spacing))
 

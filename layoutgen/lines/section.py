@@ -91,6 +91,8 @@ def line_admittance(
     C. R. Paul, "Analysis of Multiconductor Transmission Lines", Wiley, 1994, ch. 4.
     """
     omega = 2 * np.pi * np.atleast_1d(np.asarray(frequency, dtype=float))[:, None]
+    if not np.any(resistance) and not np.any(conductance):
+        return _lossless_admittance(omega, modes, length)
     series = 1j * omega + np.asarray(resistance)
     shunt = 1j * omega * modes.slowness**2 + np.asarray(conductance)
     exponent = np.sqrt(series * shunt) * length
@@ -99,6 +101,15 @@ def line_admittance(
     near = (current * (admittance / np.tanh(exponent))[:, None, :]) @ current.T
     far = (current * (-admittance / np.sinh(exponent))[:, None, :]) @ current.T
     return near, far
+
+
+def _lossless_admittance(omega: Floats, modes: Modes, length: float) -> tuple[Complexes, Complexes]:
+    """The same without loss, in real numbers, which is several times faster."""
+    phase = omega * modes.slowness * length
+    current = modes.current
+    near = (current * (-modes.slowness / np.tan(phase))[:, None, :]) @ current.T
+    far = (current * (modes.slowness / np.sin(phase))[:, None, :]) @ current.T
+    return np.asarray(1j * near, dtype=np.complex128), np.asarray(1j * far, dtype=np.complex128)
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -231,13 +242,12 @@ class LineSolver:
         """Table of the slab, or of another permittivity, with all metal receded by a little."""
         key = (eps_r, recession, strips.walls is not None)
         if key not in self._kernels:
-            around = 1.0 if strips.walls is None else 2.1 if self.cover is not None else 13.1
             self._kernels[key] = build_kernel(
                 height=self.height + 2 * recession,
                 eps_r=eps_r,
                 thickness=self.thickness - 2 * recession,
                 cover=self.cover,
-                reach=around * (self.reach + 2 * recession),
+                reach=self._table_reach(strips) + 30 * recession,
             )
         if strips.walls is None:
             return self._kernels[key]
@@ -245,6 +255,14 @@ class LineSolver:
         if key not in self._walled or self._walled[key][0] != spacing:
             self._walled[key] = spacing, add_walls(self._kernels[key], spacing)
         return self._walled[key][1]
+
+    def _table_reach(self, strips: _Strips) -> float:
+        """How far potentials have to be known: to where reflections in side walls have died out. [m]"""
+        if strips.walls is None:
+            return self.reach
+        if self.cover is None:
+            return 13.1 * self.reach
+        return 2.1 * self.reach + 6 * (self.height + self.cover)
 
     def _system(self, strips: _Strips, recession: float = 0.0) -> StripSystem:
         if not strips.extent <= self.reach * (1 + 1e-9) + 2 * recession:
