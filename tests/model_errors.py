@@ -202,7 +202,7 @@ def one_via() -> float:
 
 def chip_path() -> float:
     """From 0.5 nH for a millimetre of path 0.5 mm wide, about 1 mm above ground: common practice."""
-    return off(path_inductance(centres=[0.0], width=0.5e-3, height=1.06e-3, length=1e-3)[0, 0], 0.5e-9)
+    return off(path_inductance(centres=[0.0], widths=0.5e-3, heights=1.06e-3, lengths=1e-3)[0, 0], 0.5e-9)
 
 
 def resonator_coupling() -> float:

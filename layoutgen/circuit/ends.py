@@ -3,10 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from functools import lru_cache
 from itertools import pairwise
-from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -137,20 +136,22 @@ class ChipRow:
 
 
 def chip_row(comb: Comb, strips: Sequence[int]) -> ChipRow:
-    """The chips of the named resonators, which must all have one and share their case and lands."""
+    """The chips of the named resonators, which must all have one."""
     stack = comb.stack
     loads = [_load(comb.resonators[i]) for i in strips]
     centres = [comb.resonators[i].x for i in strips]
-    first = loads[0]
-    if any(replace(load, **_VALUES) != replace(first, **_VALUES) for load in loads):
-        raise InputError("chip_row", "resonators", "chips on different lands", "must all be mounted alike")
     body = path_inductance(
         centres=centres,
-        width=first.body_width,
-        height=stack.height + stack.conductor + first.current_height,
-        length=first.span,
+        widths=[load.body_width for load in loads],
+        heights=[stack.height + stack.conductor + load.current_height for load in loads],
+        lengths=[load.span for load in loads],
     )
-    pad = path_inductance(centres=centres, width=first.pad_width, height=stack.height, length=first.pad_path)
+    pad = path_inductance(
+        centres=centres,
+        widths=[load.pad_width for load in loads],
+        heights=stack.height,
+        lengths=[load.pad_path for load in loads],
+    )
     residual = np.diag([load.inductance for load in loads])
     pads = []
     for load in loads:
@@ -164,10 +165,6 @@ def chip_row(comb: Comb, strips: Sequence[int]) -> ChipRow:
         ),
         pad_capacitance=np.array(pads),
     )
-
-
-_VALUES: dict[str, Any] = {"capacitance": 1.0, "tolerance": 0.0, "resistance": 0.0, "inductance": 0.0}
-"""Stands for what may differ from chip to chip."""
 
 
 def _load(resonator: Resonator) -> ChipLoad:

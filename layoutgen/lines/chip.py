@@ -22,27 +22,34 @@ __all__ = ["body_capacitance", "path_inductance"]
 Floats = NDArray[np.float64]
 
 
-def path_inductance(*, centres: ArrayLike, width: float, height: float, length: float) -> Floats:
-    """Inductance matrix of equal, parallel, flat conductors above the ground plane.
+def path_inductance(
+    *, centres: ArrayLike, widths: ArrayLike, heights: ArrayLike, lengths: ArrayLike
+) -> Floats:
+    """Inductance matrix of parallel flat conductors above the ground plane, side by side.
 
     Parameters
     ----------
     centres : array_like, shape (n,)
         Of the conductors. [m]
-    width, height, length : float
+    widths, heights, lengths : array_like, broadcast to shape (n,)
         Of each; the height is that of the current above the ground plane. [m]
 
     Returns
     -------
     ndarray, shape (n, n)
-        Per-unit-length inductance, thin conductors, times the length. [H]
+        Per-unit-length inductance, of thin conductors for the own and of filaments for the mutual terms, times
+        the length, which for two of them is the shorter one. [H]
     """
     x = np.asarray(centres, dtype=float)
-    apart = np.abs(x[:, None] - x[None, :])
-    own = air_impedance(width / height) / SPEED_OF_LIGHT
+    width, height, length = (
+        np.broadcast_to(np.asarray(v, float), x.shape) for v in (widths, heights, lengths)
+    )
+    apart = np.square(x[:, None] - x[None, :])
+    over, under = (np.square(np.add.outer(height, sign * height)) for sign in (1, -1))
     with np.errstate(divide="ignore"):
-        mutual = VACUUM_PERMEABILITY / (4 * np.pi) * np.log1p((2 * height / apart) ** 2)
-    result: Floats = np.where(apart > 0, mutual, own) * length
+        per_metre = VACUUM_PERMEABILITY / (4 * np.pi) * np.log((apart + over) / (apart + under))
+    np.fill_diagonal(per_metre, air_impedance(width / height) / SPEED_OF_LIGHT)
+    result: Floats = per_metre * np.minimum.outer(length, length)
     return result
 
 

@@ -194,11 +194,11 @@ def _electrical_length(spec: Spec, stack: Stack, width: float, load: ChipLoad) -
     line = single_line(width=width, height=stack.height, eps_r=stack.eps_r, thickness=stack.conductor)
     body = path_inductance(
         centres=[0.0],
-        width=load.body_width,
-        length=load.span,
-        height=stack.height + stack.conductor + load.current_height,
+        widths=load.body_width,
+        lengths=load.span,
+        heights=stack.height + stack.conductor + load.current_height,
     )[0, 0]
-    pad = path_inductance(centres=[0.0], width=load.pad_width, height=stack.height, length=load.pad_path)[
+    pad = path_inductance(centres=[0.0], widths=load.pad_width, heights=stack.height, lengths=load.pad_path)[
         0, 0
     ]
     series = float(body + pad) + 0.06e-9 + load.inductance

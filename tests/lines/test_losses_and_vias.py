@@ -150,14 +150,14 @@ def test_via_resistance(row):
 
 def test_the_path_of_a_mounted_chip_has_half_a_nanohenry_per_millimetre():
     """Common practice for a 0.5 mm wide path about 1 mm above ground."""
-    found = path_inductance(centres=[0.0], width=0.5e-3, height=1.06e-3, length=1e-3)
+    found = path_inductance(centres=[0.0], widths=0.5e-3, heights=1.06e-3, lengths=1e-3)
 
     assert found[0, 0] == pytest.approx(0.5e-9, rel=0.2, abs=0)
 
 
 def test_parallel_paths_couple_like_filaments_over_a_plane():
     """mu0/4pi ln(1 + (2h/d)^2), Grover 1946."""
-    found = path_inductance(centres=[0.0, 4.2e-3], width=0.5e-3, height=1.06e-3, length=1.3e-3)
+    found = path_inductance(centres=[0.0, 4.2e-3], widths=0.5e-3, heights=1.06e-3, lengths=1.3e-3)
 
     assert found[0, 1] == pytest.approx(1e-7 * np.log(1 + (2.12 / 4.2) ** 2) * 1.3e-3, rel=1e-6, abs=0)
 

@@ -172,7 +172,8 @@ def test_any_capacitance_matrix_is_symmetric_diagonally_dominant_and_grows_with_
     )
 
     np.testing.assert_allclose(slab, slab.T, rtol=1e-12, atol=0)
-    assert (slab - np.diag(np.diag(slab)) <= 0).all()
+    # couplings are negative; far ones under a cover vanish in the interpolation of the tables
+    assert (slab - np.diag(np.diag(slab)) <= 1e-5 * slab.max()).all()
     assert (slab.sum(axis=1) > 0).all()
     assert (np.linalg.eigvalsh(slab - air) >= -1e-9 * slab.max()).all()
     assert (np.linalg.eigvalsh(eps_r * air - slab) >= -1e-9 * slab.max()).all()
