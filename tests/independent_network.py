@@ -1,7 +1,7 @@
 """The comb's network assembled a second time, from parts of scikit-rf, for comparison and for timing.
 
-The sections of coupled line are given as admittance blocks; everything else (feeds, chips, vias, shunt capacitances,
-the way it is all connected) is scikit-rf's.
+The sections of coupled line are given as admittance blocks; everything else (feeds, chips, vias, shunt
+capacitances, the way it is all connected) is scikit-rf's.
 """
 
 from __future__ import annotations
@@ -66,8 +66,11 @@ class _Assembly:
             near, far = line_admittance(self.band.f, modes, section.length)
             network = self._of_admittance(np.block([[near, far], [far, near]]), f"section{number}")
             for i, strip in enumerate(section.strips):
-                tapped = [p for p, feed in enumerate(self.comb.feeds)
-                          if feed.resonator == strip and feed.tap == section.bottom]  # fmt: skip
+                tapped = [
+                    p
+                    for p, feed in enumerate(self.comb.feeds)
+                    if feed.resonator == strip and feed.tap == section.bottom
+                ]
                 if tapped:
                     self._junction(tapped[0], network, i, float(matrices.inductance[i, i]))
                 else:
@@ -75,12 +78,14 @@ class _Assembly:
                 self._attach(strip, section.top, network, i + len(section.strips))
 
     def _junction(self, port: int, section: skrf.Network, index: int, inductance: float) -> None:
-        """The tap between what is below it and the section above, two negative pieces of line around a node."""
+        """The tap between what is below it and the section above: two negative pieces of line."""
         feed = self.comb.feeds[port]
         shortening = tap_shortening(**self._tap_shape(port))
         y = 1 / (-1j * self.omega * inductance * shortening)
-        pieces = [self._of_admittance(np.moveaxis(np.array([[y, -y], [-y, y]]), 2, 0), f"{name}{port}")
-                  for name in ("below", "above")]  # fmt: skip
+        pieces = [
+            self._of_admittance(np.moveaxis(np.array([[y, -y], [-y, y]]), 2, 0), f"{name}{port}")
+            for name in ("below", "above")
+        ]
         self._attach(feed.resonator, feed.tap, pieces[0], 0)
         self.nodes["above", port] = [(pieces[1], 0), (section, index)]
         fringe = self._capacitor(tap_capacitance(**self._tap_shape(port)), f"fringe{port}")
@@ -88,24 +93,38 @@ class _Assembly:
 
     def _tap_shape(self, port: int) -> dict[str, float]:
         feed, stack = self.comb.feeds[port], self.comb.stack
-        return {"line_width": self.comb.resonators[feed.resonator].width, "feed_width": feed.width,
-                "height": stack.height, "eps_r": stack.eps_r, "thickness": stack.conductor}  # fmt: skip
+        return {
+            "line_width": self.comb.resonators[feed.resonator].width,
+            "feed_width": feed.width,
+            "height": stack.height,
+            "eps_r": stack.eps_r,
+            "thickness": stack.conductor,
+        }
 
     def _ends(self) -> None:
         comb, stack = self.comb, self.comb.stack
         resonators = comb.resonators
         ground = grounded_row(
-            stack, [r.short for r in resonators], [r.x for r in resonators], [r.segments[0].width for r in resonators]
+            stack,
+            [r.short for r in resonators],
+            [r.x for r in resonators],
+            [r.segments[0].width for r in resonators],
         )
-        shorts = skrf.Network(frequency=self.band, z0=Z0, s=skrf.network.z2s(
-            1j * self.omega[:, None, None] * ground.inductance, z0=Z0))  # fmt: skip
+        shorts = skrf.Network(
+            frequency=self.band,
+            z0=Z0,
+            s=skrf.network.z2s(1j * self.omega[:, None, None] * ground.inductance, z0=Z0),
+        )
         shorts.name = "vias"
         for i in self.strips:
             self._attach(i, 0.0, shorts, i)
         self._chips()
         for i, resonator in enumerate(resonators):
-            shunts = [(0.0, overhang_capacitance(resonator, stack)), (resonator.length, open_end(resonator, stack)),
-                      *step_capacitances(resonator, stack)]  # fmt: skip
+            shunts = [
+                (0.0, overhang_capacitance(resonator, stack)),
+                (resonator.length, open_end(resonator, stack)),
+                *step_capacitances(resonator, stack),
+            ]
             for number, (height, capacitance) in enumerate(shunts):
                 self._attach(i, height, self._capacitor(capacitance, f"shunt{i}_{number}"), 0)
 
@@ -113,12 +132,15 @@ class _Assembly:
         return self._of_admittance((1j * self.omega * capacitance)[:, None, None], name)
 
     def _chips(self) -> None:
-        """Path inductances as one network, each chip a series capacitor before it, pads and vias behind it."""
+        """Path inductances as one network, each chip a series capacitor before it, pads and vias behind."""
         row = chip_row(self.comb, self.strips)
         below = np.linalg.inv(1j * self.omega[:, None, None] * row.ground.inductance)
         below = below + 1j * self.omega[:, None, None] * np.diag(row.pad_capacitance)
-        path = skrf.Network(frequency=self.band, z0=Z0, s=skrf.network.z2s(
-            np.linalg.inv(below) + 1j * self.omega[:, None, None] * row.path, z0=Z0))  # fmt: skip
+        path = skrf.Network(
+            frequency=self.band,
+            z0=Z0,
+            s=skrf.network.z2s(np.linalg.inv(below) + 1j * self.omega[:, None, None] * row.path, z0=Z0),
+        )
         path.name = "paths"
         media = DefinedGammaZ0(self.band, z0=Z0)
         for i in self.strips:

@@ -21,7 +21,7 @@ import skrf
 from readers import Dxf, read_dxf
 from shapely.geometry.base import BaseGeometry
 
-from layoutgen.circuit import Circuit, SectionSolver
+from layoutgen.circuit import Circuit
 from layoutgen.comb import ChipLoad, Comb, Feed, Resonator, Segment, Stack, ViaRow
 from layoutgen.design import design
 from layoutgen.package import deliver

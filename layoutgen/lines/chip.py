@@ -37,8 +37,8 @@ def path_inductance(
     Returns
     -------
     ndarray, shape (n, n)
-        Per-unit-length inductance, of thin conductors for the own and of filaments for the mutual terms, times
-        the length, which for two of them is the shorter one. [H]
+        Per-unit-length inductance, of thin conductors for the own and of filaments for the mutual terms,
+        times the length, which for two of them is the shorter one. [H]
     """
     x = np.asarray(centres, dtype=float)
     width, height, length = (

@@ -37,7 +37,7 @@ def ideal_combline(case: str, f_over_f0: np.ndarray) -> np.ndarray:
     near, far = line_admittance(f_over_f0 * 1e9, modes, length)
     n = len(ground)
     resonators = np.arange(1, n - 1)
-    # end A of the outer lines are the ports, end B of the resonators carries the capacitors, all else is grounded
+    # ports at end A of the outer lines, capacitors at end B of the resonators, all else grounded
     ends_b = np.zeros((len(f_over_f0), n, n), dtype=complex)
     ends_b[:] = near
     load = f_over_f0 * 0.02 * line_admittance_ratio / np.tan(theta)
@@ -104,7 +104,9 @@ def test_any_comb_is_passive_and_reciprocal(comb, start):
 def test_each_mechanism_adds_loss_and_together_they_nearly_add_up():
     """Small losses add, to first order; all are a tenth of a real board's here, the second order is 5 %."""
     comb = chip_comb()
-    stack = replace(comb.stack, tan_delta=comb.stack.tan_delta / 10, conductivity=100 * comb.stack.conductivity)
+    stack = replace(
+        comb.stack, tan_delta=comb.stack.tan_delta / 10, conductivity=100 * comb.stack.conductivity
+    )
     loads = [replace(r.load, resistance=r.load.resistance / 10) for r in comb.resonators]
     resonators = tuple(replace(r, load=load) for r, load in zip(comb.resonators, loads, strict=True))
     comb = replace(comb, stack=stack, resonators=resonators)
@@ -137,10 +139,15 @@ def test_dielectric_q_of_a_resonator_is_the_reciprocal_of_filled_energy_times_lo
 
 
 def test_the_coupling_of_the_reference_resonator():
-    """A pair of loaded lines against a finite-difference solution of the same section, two or three digits."""
+    """A pair of loaded lines against a finite-difference solution of the section, two or three digits."""
     data = table("combline.toml", "reference_resonator")
-    solver = LineSolver(height=data["height_mm"] * 1e-3, eps_r=data["eps_r"], cover=None, reach=20e-3,
-                        thickness=data["copper_mm"] * 1e-3)  # fmt: skip
+    solver = LineSolver(
+        height=data["height_mm"] * 1e-3,
+        eps_r=data["eps_r"],
+        cover=None,
+        reach=20e-3,
+        thickness=data["copper_mm"] * 1e-3,
+    )
     width = data["width_mm"] * 1e-3
     one = solver.matrices(np.zeros(1), np.array([width]), [[0]])[0]
     length = _resonant(one.inductance[0, 0], one.capacitance[0, 0], data, length=None, f=data["f_GHz"] * 1e9)
@@ -148,10 +155,15 @@ def test_the_coupling_of_the_reference_resonator():
         x = np.array([0, width + gap * 1e-3])
         m = solver.matrices(x, np.array([width, width]), [[0, 1]])[0]
         even, odd = (
-            _resonant(m.inductance[0, 0] + sign * m.inductance[0, 1], m.capacitance[0, 0] + sign * m.capacitance[0, 1],
-                      data, length=length, f=None)
+            _resonant(
+                m.inductance[0, 0] + sign * m.inductance[0, 1],
+                m.capacitance[0, 0] + sign * m.capacitance[0, 1],
+                data,
+                length=length,
+                f=None,
+            )
             for sign in (1, -1)
-        )  # fmt: skip
+        )
         k = abs(odd**2 - even**2) / (odd**2 + even**2)
         # half a step of the printed digits, and 1 % for the finite differences
         assert k == pytest.approx(expected, rel=0.01, abs=5e-4)

@@ -1,7 +1,7 @@
 """Resonators of the circuit against solutions of the same copper in three dimensions.
 
-Tolerances: what the models state, 0.5 % in frequency, 3 % in coupling, 0.1 % in the shift by a tap and 5 % in external
-Q; the solutions' own mesh errors stand beside them.
+Tolerances: what the models state, 0.5 % in frequency, 3 % in coupling, 0.1 % in the shift by a tap and 5 %
+in external Q; the solutions' own mesh errors stand beside them.
 """
 
 from __future__ import annotations
@@ -18,16 +18,37 @@ MM = 1e-3
 VIAS = ViaRow(count=2, pitch=0.7 * MM, drill=0.4 * MM, finished=0.3 * MM, pad=0.6 * MM)
 
 
-def comb_of(case: dict, *, places: list[float], cover: float, box: float, tap: float, feed_width: float) -> Comb:
+def comb_of(
+    case: dict, *, places: list[float], cover: float, box: float, tap: float, feed_width: float
+) -> Comb:
     """Equal resonators at given places across a box; copper so thin that its thickness does not count."""
-    stack = Stack(height=case["height"] * MM, eps_r=case["eps_r"], tan_delta=0.0, conductor=1e-6, conductivity=5.8e7,
-                  roughness=0.0, cover=cover * MM)  # fmt: skip
+    stack = Stack(
+        height=case["height"] * MM,
+        eps_r=case["eps_r"],
+        tan_delta=0.0,
+        conductor=1e-6,
+        conductivity=5.8e7,
+        roughness=0.0,
+        cover=cover * MM,
+    )
     load = ChipLoad(
-        case="0402", capacitance=case["load_pf"] * 1e-12, tolerance=0.0, resistance=0.0, inductance=0.0,
-        body_length=1 * MM, body_width=0.5 * MM, body_height=0.5 * MM, current_height=0.25 * MM,
-        land_length=0.5 * MM, land_width=0.6 * MM, land_gap=0.5 * MM, pad_length=1.2 * MM, pad_width=1.3 * MM,
-        via_offset=0.9 * MM, vias=VIAS,
-    )  # fmt: skip
+        case="0402",
+        capacitance=case["load_pf"] * 1e-12,
+        tolerance=0.0,
+        resistance=0.0,
+        inductance=0.0,
+        body_length=1 * MM,
+        body_width=0.5 * MM,
+        body_height=0.5 * MM,
+        current_height=0.25 * MM,
+        land_length=0.5 * MM,
+        land_width=0.6 * MM,
+        land_gap=0.5 * MM,
+        pad_length=1.2 * MM,
+        pad_width=1.3 * MM,
+        via_offset=0.9 * MM,
+        vias=VIAS,
+    )
     line = Segment(length=case["length"] * MM, width=case["width"] * MM)
     resonators = tuple(
         Resonator(x=x * MM, segments=(line,), short=VIAS, overhang=0.3 * MM, load=load) for x in places
@@ -36,9 +57,17 @@ def comb_of(case: dict, *, places: list[float], cover: float, box: float, tap: f
         Feed(resonator=i, side=side, tap=tap * MM, width=feed_width * MM, impedance=50.0, launch=None)
         for i, side in ((0, "left"), (len(places) - 1, "right"))
     )
-    return Comb(stack=stack, resonators=resonators, feeds=(first, last), width=max(places[-1] + 12, box) * MM, height=30 * MM,
-                short_line=8 * MM, ground_clearance=6 * MM, feed_clearance=2 * MM,
-                side_walls=(0.0, box * MM))  # fmt: skip
+    return Comb(
+        stack=stack,
+        resonators=resonators,
+        feeds=(first, last),
+        width=max(places[-1] + 12, box) * MM,
+        height=30 * MM,
+        short_line=8 * MM,
+        ground_clearance=6 * MM,
+        feed_clearance=2 * MM,
+        side_walls=(0.0, box * MM),
+    )
 
 
 def test_one_resonator_alone():
@@ -63,10 +92,14 @@ def test_two_resonators_coupled():
     assert k == pytest.approx(case["k"], rel=0.03, abs=0)
 
 
-@pytest.mark.parametrize("case", rows("three-dimensional.toml", "tapped"), ids=lambda c: f"{c['eps_r']} {c['tap']}")
+@pytest.mark.parametrize(
+    "case", rows("three-dimensional.toml", "tapped"), ids=lambda c: f"{c['eps_r']} {c['tap']}"
+)
 def test_a_tapped_resonator(case):
     """The tap raises the resonance by 1 to 2 %, which in a filter of 5 % is a third of the band."""
-    comb = comb_of(case, places=[8.0, 60.0], cover=6.0, box=15.0, tap=case["tap"], feed_width=case["feed_width"])
+    comb = comb_of(
+        case, places=[8.0, 60.0], cover=6.0, box=15.0, tap=case["tap"], feed_width=case["feed_width"]
+    )
     circuit = Circuit(comb, SectionSolver(comb.stack, comb.width), strips=[0])
     free = brentq(lambda f: circuit.input_admittance([f], 0)[0].imag, 1.2e9, 3.5e9)
 
@@ -78,9 +111,9 @@ def test_a_tapped_resonator(case):
 
 
 def _pole(circuit: Circuit, near: float) -> complex:
-    """Complex resonance with the feed in its own impedance: S11 has its pole where the load's admittance vanishes."""
+    """Complex resonance with the feed in its own impedance, the pole of S11."""
     f = near * np.linspace(0.9, 1.12, 89)
-    # a rational function of low order through S11 over frequency (Levy's linear fit); its pole is the resonance
+    # a rational function of low order through S11 over frequency, by a linear fit (Levy 1959)
     x = (f - near) / near
     s = circuit.scattering(f, NO_LOSSES)[:, 0, 0]
     numerator, denominator = np.vander(x, 5), np.vander(x, 5)[:, :-1]

@@ -44,8 +44,9 @@ def test_roughness(row):
 @pytest.mark.parametrize("row", rows("losses.toml", "microstrip_conductor"), ids=str)
 def test_conductor_loss_is_the_incremental_inductance(row):
     """0.2 %: the derivative of inductances that are good to 0.1 % and err alike."""
-    solver = LineSolver(height=row["h_mm"] * 1e-3, eps_r=row["eps_r"], thickness=row["t_mm"] * 1e-3, cover=None,
-                        reach=10e-3)  # fmt: skip
+    solver = LineSolver(
+        height=row["h_mm"] * 1e-3, eps_r=row["eps_r"], thickness=row["t_mm"] * 1e-3, cover=None, reach=10e-3
+    )
     centre, width = np.zeros(1), np.array([row["w_mm"] * 1e-3])
 
     loss = solver.losses(centre, width, [[0]])[0]
@@ -116,7 +117,7 @@ def test_vias_in_parallel_have_less_inductance_but_more_than_a_fair_share():
 def test_neumanns_integral_of_two_vias_over_the_plane():
     """The vertical part against brute-force integration of the filament and its image."""
     h, d = 0.79e-3, 2.3e-3
-    z, step = np.linspace(0, h, 4001, retstep=True)
+    z = np.linspace(0, h, 4001)
     image = np.linspace(-h, h, 8001)
     inner = np.trapezoid(1 / np.hypot(d, z[:, None] - image[None, :]), image, axis=1)
     expected = 1e-7 * np.trapezoid(inner, z)
@@ -132,18 +133,28 @@ def test_neumanns_integral_of_two_vias_over_the_plane():
 
 def test_the_mutual_inductance_of_far_ends_falls_with_the_cube_of_the_distance():
     def mutual(d: float) -> float:
-        return float(grounded_ends_inductance(
-            positions=[[0.0], [d]], radii=[0.15e-3] * 2, strip_centres=[0.0, d], strip_widths=[1e-3] * 2,
-            height=0.8e-3,
-        )[0, 1])  # fmt: skip
+        return float(
+            grounded_ends_inductance(
+                positions=[[0.0], [d]],
+                radii=[0.15e-3] * 2,
+                strip_centres=[0.0, d],
+                strip_widths=[1e-3] * 2,
+                height=0.8e-3,
+            )[0, 1]
+        )
 
     assert mutual(12e-3) / mutual(24e-3) == pytest.approx(8, rel=0.05, abs=0)
 
 
 @pytest.mark.parametrize("row", rows("losses.toml", "via_resistance"), ids=str)
 def test_via_resistance(row):
-    found = via_resistance(row["f_GHz"] * 1e9, height=row["h_mm"] * 1e-3, radius=row["diameter_mm"] / 2 * 1e-3,
-                           plating=row["plating_um"] * 1e-6, conductivity=5.8e7)  # fmt: skip
+    found = via_resistance(
+        row["f_GHz"] * 1e9,
+        height=row["h_mm"] * 1e-3,
+        radius=row["diameter_mm"] / 2 * 1e-3,
+        plating=row["plating_um"] * 1e-6,
+        conductivity=5.8e7,
+    )
 
     assert float(found) == pytest.approx(row["R_mohm"] * 1e-3, rel=1e-5, abs=0)
 
@@ -179,5 +190,6 @@ def test_a_wide_gap_leaves_an_open_end():
 
 def test_overlapping_vias_are_refused():
     with pytest.raises(InputError, match="overlap"):
-        grounded_ends_inductance(positions=[[0.0, 0.3e-3]], radii=[0.2e-3], strip_centres=[0.0],
-                                 strip_widths=[1e-3], height=0.8e-3)  # fmt: skip
+        grounded_ends_inductance(
+            positions=[[0.0, 0.3e-3]], radii=[0.2e-3], strip_centres=[0.0], strip_widths=[1e-3], height=0.8e-3
+        )

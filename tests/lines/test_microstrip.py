@@ -47,7 +47,7 @@ def test_the_transcription_of_the_pair(row):
 
 @pytest.mark.parametrize("row", rows("lines.toml", "microstrip"), ids=lambda r: f"{r['eps_r']} {r['u']}")
 def test_the_thin_line_keeps_its_stated_accuracy(row):
-    """0.2 % in permittivity as the authors state; half of that in impedance plus their 0.01 to 0.03 % in air."""
+    """0.2 % in permittivity as the authors state; half of that in impedance plus 0.03 % in air."""
     line = single_line(width=row["u"], height=1.0, eps_r=row["eps_r"])
 
     assert float(line.eps_eff) == pytest.approx(row["eps_eff"], rel=2e-3, abs=0)
@@ -90,7 +90,7 @@ def test_a_wide_line_is_a_parallel_plate_and_a_narrow_one_half_filled():
 
 @pytest.mark.parametrize("u", [0.53, 1.1, 2.9])
 def test_the_open_end_agrees_with_the_earlier_fit(u):
-    """From Hammerstad's earlier fit 0.412 h (eps + 0.3)(u + 0.264) / ((eps - 0.258)(u + 0.8)), good to about 10 %."""
+    """Hammerstad's 0.412 h (eps + 0.3)(u + 0.264) / ((eps - 0.258)(u + 0.8)), good to about 10 %."""
     eps_eff = float(effective_permittivity(width=u, height=1.0, eps_r=3.55))
     earlier = 0.412 * (eps_eff + 0.3) * (u + 0.264) / ((eps_eff - 0.258) * (u + 0.8))
 

@@ -68,7 +68,9 @@ def test_a_pair_of_strips_on_a_slab(row):
     np.testing.assert_allclose(odd, [row["Z0o_ohm"], row["eps_o"]], rtol=SELF, atol=0)
 
 
-@pytest.mark.parametrize("row", rows("lines.toml", "arrays"), ids=lambda r: f"{r['eps_r']} {len(r['widths'])}")
+@pytest.mark.parametrize(
+    "row", rows("lines.toml", "arrays"), ids=lambda r: f"{r['eps_r']} {len(r['widths'])}"
+)
 def test_every_coupling_of_an_array(row):
     widths, gaps = np.array(row["widths"]), np.array(row["gaps"])
     centres = np.concatenate([[0], np.cumsum((widths[:-1] + widths[1:]) / 2 + gaps)])
@@ -182,10 +184,15 @@ def test_any_capacitance_matrix_is_symmetric_diagonally_dominant_and_grows_with_
 def test_refinement_converges_from_below():
     """Galerkin's capacitance of a set at given potentials is a lower bound and grows with the mesh."""
     values = [
-        float(np.sum(solve_strips(centres=[0, 1.2], widths=[1.1, 1.1], thickness=0.05, height=1.0, eps_r=3.55,
-                                  mesh=mesh)))
+        float(
+            np.sum(
+                solve_strips(
+                    centres=[0, 1.2], widths=[1.1, 1.1], thickness=0.05, height=1.0, eps_r=3.55, mesh=mesh
+                )
+            )
+        )
         for mesh in (Mesh(across=8, up=2), Mesh(), Mesh().finer, Mesh().finer.finer)
-    ]  # fmt: skip
+    ]
 
     assert values == sorted(values)
     assert values[1] == pytest.approx(values[3], rel=SELF, abs=0)

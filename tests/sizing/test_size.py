@@ -22,10 +22,13 @@ EDGES = 0.01  # of the bandwidth
 def spec_of(tmp_path, *, centre=1.71, width=0.06, order=3, **keys):
     """A specification in GHz; keys as ``table__key``."""
     lines = {
-        "passband": {"lower": f"{centre * (1 - width / 2):.6f} GHz", "upper": f"{centre * (1 + width / 2):.6f} GHz",
-                     "order": order},
+        "passband": {
+            "lower": f"{centre * (1 - width / 2):.6f} GHz",
+            "upper": f"{centre * (1 + width / 2):.6f} GHz",
+            "order": order,
+        },
         "construction": {"substrate": "ptfe-microfibre-2.20"},
-    }  # fmt: skip
+    }
     for key, value in keys.items():
         table, name = key.split("__")
         lines.setdefault(table, {})[name] = value
@@ -34,8 +37,17 @@ def spec_of(tmp_path, *, centre=1.71, width=0.06, order=3, **keys):
     return load_spec(path)
 
 
+def _attempt(spec):
+    try:
+        return size(spec), ""
+    except PhysicalRefusal as refusal:
+        return None, refusal.remedy
+
+
 def _table(name, values):
-    written = [f"{k} = {v}" if isinstance(v, int) or v.startswith("[") else f'{k} = "{v}"' for k, v in values.items()]
+    written = [
+        f"{k} = {v}" if isinstance(v, int) or v.startswith("[") else f'{k} = "{v}"' for k, v in values.items()
+    ]
     return "\n".join([f"[{name}]", *written, ""])
 
 
@@ -131,8 +143,16 @@ def test_every_dimension_is_on_the_grid_and_every_chip_is_stocked(tmp_path):
 
     comb = size(spec).comb
 
-    values = [*comb.gaps, *(r.length for r in comb.resonators), comb.feeds[0].tap, comb.resonators[0].width,
-              comb.width, comb.height, comb.short_line, *(r.x - r.width / 2 for r in comb.resonators)]  # fmt: skip
+    values = [
+        *comb.gaps,
+        *(r.length for r in comb.resonators),
+        comb.feeds[0].tap,
+        comb.resonators[0].width,
+        comb.width,
+        comb.height,
+        comb.short_line,
+        *(r.x - r.width / 2 for r in comb.resonators),
+    ]
     for value in values:
         assert value == pytest.approx(snap(value, 2e-6), rel=0, abs=1e-12)
     assert {r.load.capacitance for r in comb.resonators} <= set(spec.load.series)
@@ -199,18 +219,33 @@ def test_the_midband_loss_is_what_the_unloaded_q_says(tmp_path):
         ({"order": 2, "width": 0.2}, "passband.upper", "coupling of 0.3"),
         ({"order": 6, "width": 0.009}, "passband.upper", "via pad"),
         ({"load__value": "1.5 pF", "load__inductance": "2.3 nH"}, "load.value", "self-resonance"),
-        ({"construction__thickness": "1.575 mm", "centre": 2.6}, "construction.cover", "free-space wavelengths"),
-        ({"construction__thickness": "1.575 mm", "construction__cover": "9 mm", "centre": 3.3,
-          "construction__electrical_length": "24 deg"}, "construction.electrical_length", "laminate"),
+        (
+            {"construction__thickness": "1.575 mm", "centre": 2.6},
+            "construction.cover",
+            "free-space wavelengths",
+        ),
+        (
+            {
+                "construction__thickness": "1.575 mm",
+                "construction__cover": "9 mm",
+                "centre": 3.3,
+                "construction__electrical_length": "24 deg",
+            },
+            "construction.electrical_length",
+            "laminate",
+        ),
         ({"construction__line_width": "0.12 mm"}, "construction.line_width", "0.15 mm"),
         ({"construction__line_width": "0.4 mm"}, "construction.line_width", "land"),
         ({"short__drill": "0.2 mm"}, "short.drill", "plated hole"),
         ({"board__clearance": "2 mm"}, "board.clearance", "5 laminate thicknesses"),
-        ({"construction__substrate": "epoxy-glass-4.30", "width": 0.02, "order": 5}, "construction.substrate",
-         "unloaded Q"),
+        (
+            {"construction__substrate": "epoxy-glass-4.30", "width": 0.02, "order": 5},
+            "construction.substrate",
+            "unloaded Q",
+        ),
     ],
     ids=str,
-)  # fmt: skip
+)
 def test_what_cannot_be_built_is_refused_with_the_figure(tmp_path, keys, key, says):
     spec = spec_of(tmp_path, **keys)
 
@@ -237,11 +272,12 @@ def test_near_a_limit_there_is_a_warning_with_the_figure(tmp_path):
 )
 def test_any_sensible_request_is_met_or_refused(tmp_path_factory, centre, width, order, return_loss):
     folder = tmp_path_factory.mktemp("any")
-    spec = spec_of(folder, centre=centre, width=width, order=order, passband__return_loss=f"{return_loss:.3f} dB")
-    try:
-        sizing = size(spec)
-    except PhysicalRefusal as refusal:
-        assert any(character.isdigit() for character in refusal.remedy)
+    spec = spec_of(
+        folder, centre=centre, width=width, order=order, passband__return_loss=f"{return_loss:.3f} dB"
+    )
+    sizing, refusal = _attempt(spec)
+    if sizing is None:
+        assert any(character.isdigit() for character in refusal)
         return
 
     worst, lower, upper = band_of(spec, sizing)

@@ -28,7 +28,9 @@ def test_butterworth_elements(row):
     np.testing.assert_allclose(butterworth_g(int(row[0])), [1.0, *row[1:]], rtol=PRINTED, atol=0)
 
 
-@pytest.mark.parametrize("row", rows("prototypes.toml", "chebyshev"), ids=lambda r: f"{r[0]} dB, order {r[1]}")
+@pytest.mark.parametrize(
+    "row", rows("prototypes.toml", "chebyshev"), ids=lambda r: f"{r[0]} dB, order {r[1]}"
+)
 def test_chebyshev_elements(row):
     np.testing.assert_allclose(chebyshev_g(int(row[1]), row[0]), [1.0, *row[2:]], rtol=PRINTED, atol=0)
 
@@ -46,7 +48,11 @@ def test_ripple_of_return_loss(row):
 @pytest.mark.parametrize("row", rows("prototypes.toml", "couplings"), ids=lambda r: r["prototype"])
 def test_couplings_and_external_q(row):
     kind, order = row["prototype"].split(" n=")
-    g = butterworth_g(int(order)) if kind == "Butterworth" else chebyshev_g(int(order), float(kind.split()[0]))
+    g = (
+        butterworth_g(int(order))
+        if kind == "Butterworth"
+        else chebyshev_g(int(order), float(kind.split()[0]))
+    )
 
     found = couplings(g, row["fbw"])
 
@@ -63,10 +69,16 @@ def test_even_orders_use_the_last_element_for_the_external_q(order, return_loss)
     assert found.external_q_in == pytest.approx(found.external_q_out, rel=1e-9, abs=0)
 
 
-@pytest.mark.parametrize("row", rows("prototypes.toml", "midband_loss"), ids=lambda r: f"{r['prototype']} {r['Qu']}")
+@pytest.mark.parametrize(
+    "row", rows("prototypes.toml", "midband_loss"), ids=lambda r: f"{r['prototype']} {r['Qu']}"
+)
 def test_midband_loss_of_the_lossy_ladder(row):
     kind, order = row["prototype"].split(" n=")
-    g = butterworth_g(int(order)) if kind == "Butterworth" else chebyshev_g(int(order), float(kind.split()[0]))
+    g = (
+        butterworth_g(int(order))
+        if kind == "Butterworth"
+        else chebyshev_g(int(order), float(kind.split()[0]))
+    )
     fbw = row["fbw"]
     lower, upper = 1.7e9 * (np.sqrt(1 + fbw**2 / 4) - fbw / 2), 1.7e9 * (np.sqrt(1 + fbw**2 / 4) + fbw / 2)
 
