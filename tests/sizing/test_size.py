@@ -217,7 +217,7 @@ def test_the_midband_loss_is_what_the_unloaded_q_says(tmp_path):
     ("keys", "key", "says"),
     [
         ({"order": 2, "width": 0.2}, "passband.upper", "coupling of 0.3"),
-        ({"order": 6, "width": 0.009}, "passband.upper", "via pad"),
+        ({"width": 0.03, "passband__impedance": "20 ohm"}, "passband.upper", "via pad"),
         ({"load__value": "1.5 pF", "load__inductance": "2.3 nH"}, "load.value", "self-resonance"),
         (
             {"construction__thickness": "1.575 mm", "centre": 2.6},
