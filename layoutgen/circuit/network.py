@@ -10,7 +10,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Literal
+from typing import Any, Literal
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -31,6 +31,7 @@ from layoutgen.lines import (
     LossMatrices,
     Modes,
     line_admittance,
+    line_susceptance,
     surface_resistance,
     tap_capacitance,
     tap_shortening,
@@ -194,13 +195,19 @@ class Circuit:
         self, matrix: NodalMatrix, f: Floats, number: int, losses: frozenset[Mechanism], *, feeds: bool
     ) -> None:
         section = self._sections[number]
-        loss = self._losses()[number] if losses & {"conductor", "dielectric"} else None
-        near, far = self._line(f, self._modes[number], loss, section.length, losses)
+        near: NDArray[Any]
+        far: NDArray[Any]
+        if losses & {"conductor", "dielectric"}:
+            near, far = self._line(f, self._modes[number], self._losses()[number], section.length, losses)
+            add = matrix.add_block
+        else:
+            near, far = line_susceptance(f, self._modes[number], section.length)
+            add = matrix.add_susceptances
         above = {(tap.feed.resonator, tap.plane): tap.above for tap in self._taps} if feeds else {}
         bottom = np.array([above.get((i, number), self._index[i, number]) for i in section.strips])
         top = np.array([self._index[i, number + 1] for i in section.strips])
         for a, b, block in ((bottom, bottom, near), (top, top, near), (bottom, top, far), (top, bottom, far)):
-            matrix.add_block(a, b, block)
+            add(a, b, block)
 
     def _losses(self) -> list[LossMatrices]:
         if self._loss_matrices is None:

@@ -34,8 +34,16 @@ class NodalMatrix:
         )
 
     def add_block(self, rows: Indices, columns: Indices, block: NDArray[Any]) -> None:
-        """Add a block of shape (n_freq, rows, columns) [S]; neighbouring nodes take the fast way, a view."""
-        a, b, value = np.asarray(rows), np.asarray(columns), self._part(block)
+        """Add a block of admittances, shape (n_freq, rows, columns). [S]"""
+        self._put(rows, columns, self._part(block))
+
+    def add_susceptances(self, rows: Indices, columns: Indices, block: NDArray[np.float64]) -> None:
+        """Add a block of lossless admittances by their imaginary parts, shape (n_freq, rows, columns). [S]"""
+        self._put(rows, columns, block if self._lossless else 1j * block)
+
+    def _put(self, rows: Indices, columns: Indices, value: NDArray[Any]) -> None:
+        """Neighbouring nodes take the fast way, a view."""
+        a, b = np.asarray(rows), np.asarray(columns)
         if (np.diff(a) == 1).all() and (np.diff(b) == 1).all():
             self._values[:, a[0] : a[-1] + 1, b[0] : b[-1] + 1] += value
         else:

@@ -21,7 +21,14 @@ from layoutgen.lines.microstrip import (
     width_for_impedance,
 )
 from layoutgen.lines.quasistatic import Mesh, StripSystem, solve_strips
-from layoutgen.lines.section import LineSolver, LossMatrices, Modes, StripMatrices, line_admittance
+from layoutgen.lines.section import (
+    LineSolver,
+    LossMatrices,
+    Modes,
+    StripMatrices,
+    line_admittance,
+    line_susceptance,
+)
 from layoutgen.lines.via import goldfarb_pucel_inductance, grounded_ends_inductance, via_resistance
 
 __all__ = [
@@ -42,6 +49,7 @@ __all__ = [
     "goldfarb_pucel_inductance",
     "grounded_ends_inductance",
     "line_admittance",
+    "line_susceptance",
     "open_end_capacitance",
     "open_end_extension",
     "path_inductance",

@@ -73,7 +73,7 @@ def grounded_ends_inductance(
     Notes
     -----
     One via under a strip as narrow as itself agrees with the fit of Goldfarb and Pucel within 12 % over
-    its range.
+    its range, while the hole is not wider than deep; wider ones come out lower than the fit.
     """
     where = "grounded_ends_inductance"
     x = np.concatenate([np.asarray(group, dtype=float) for group in positions])
