@@ -239,7 +239,7 @@ def _via_row(spec: Spec, count: int) -> ViaRow:
     pad = snap(max(short.drill + 2 * spec.board.shop.annular_ring, short.tool + 4 * grid), 2 * grid)
     return ViaRow(
         count=count,
-        pitch=snap(max(short.pitch, pad + grid), 2 * grid),
+        pitch=snap(short.pitch, 2 * grid),
         drill=short.tool,
         finished=short.drill,
         pad=pad,
