@@ -105,21 +105,9 @@ def line_admittance(
 
 
 def line_susceptance(frequency: ArrayLike, modes: Modes, length: float) -> tuple[Floats, Floats]:
-    """Imaginary part of `line_admittance` without loss, where the real part is zero; several times faster.
+    """Imaginary part of `line_admittance` without loss, where the real part is zero; faster. [S]
 
-    Parameters
-    ----------
-    frequency : array_like, shape (n_freq,)
-        Greater than 0. [Hz]
-    modes : Modes
-        Of n strips.
-    length : float
-        Of the piece, greater than 0. [m]
-
-    Returns
-    -------
-    near, far : ndarray, shape (n_freq, n, n)
-        [S]
+    Parameters are those of `line_admittance`, and so are the shapes of what is returned.
     """
     omega = 2 * np.pi * np.atleast_1d(np.asarray(frequency, dtype=float))[:, None]
     phase = omega * modes.slowness * length
